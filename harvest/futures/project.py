@@ -1,0 +1,210 @@
+"""A rule projected over all draws: what happens by year, and what it adds up to, each with its standard error."""
+
+from __future__ import annotations
+
+from concurrent.futures import ThreadPoolExecutor
+from dataclasses import dataclass, field
+
+import numpy as np
+import pandas as pd
+
+from harvest import __version__
+from harvest.errors import SettingsError
+from harvest.futures.engine import Prepared, Progress, Tally, prepare, run, workers
+from harvest.futures.rules import Rule
+from harvest.kernels import projection as kernel
+from harvest.kernels.histogram import quantiles
+from harvest.rates import Rates
+from harvest.rates.spread import LEVELS
+from harvest.record.model import Record
+
+#: Yearly probabilities, by their column in the table of years.
+EVENT_COLUMNS = {
+    "below_limit": kernel.BELOW,
+    "ever_below_limit": kernel.EVER_BELOW,
+    "collapsed": kernel.COLLAPSED,
+    "ever_collapsed": kernel.EVER_COLLAPSED,
+    "above_ceiling": kernel.ABOVE,
+    "back_above_limit": kernel.BACK,
+    "under_ceiling": kernel.UNDER,
+    "closed": kernel.CLOSED,
+}
+_QUANTILE_NAMES = ("low90", "low50", "median", "high50", "high90")
+
+
+@dataclass(frozen=True)
+class Future:
+    """What a rule does over the years ahead.
+
+    Attributes
+    ----------
+    rule : Rule
+    by_year : DataFrame
+        One row a quota year: ``quota_year``, ``count_year`` (of the count that shows its effect); quantiles
+        and mean of ``abundance`` (at the count's moment, after that year's take), ``removals`` (total) and
+        ``quota`` (legal); each probability of :data:`EVENT_COLUMNS` with its Monte Carlo standard error
+        (``…_se``). "Ever" counts years 1 to this one, today excluded; "back above the limit" and "under the
+        ceiling" mean in this year or an earlier one.
+    measures : DataFrame
+        One row a measure: ``measure``, ``value``, ``se``.
+    paths : ndarray, shape (4, years, n)
+        Start, removals, counted abundance and quota of the first futures.
+    draws, futures_per_draw, seed, record_digest, version
+    """
+
+    rule: Rule
+    by_year: pd.DataFrame
+    measures: pd.DataFrame
+    paths: np.ndarray
+    draws: int
+    futures_per_draw: int
+    seed: int
+    record_digest: str
+    version: str = field(default=__version__)
+
+    def measure(self, name: str) -> float:
+        """The value of one measure."""
+        return float(self.measures.set_index("measure").loc[name, "value"])
+
+
+def event_error(p: np.ndarray, squares: np.ndarray, draws: int, per_draw: int) -> np.ndarray:
+    """Standard error of a probability, clustered by draw: sd of the draws' shares over √draws."""
+    mean_square = p if per_draw == 1 else squares / draws
+    return np.sqrt(np.maximum(mean_square - p * p, 0.0) / max(draws - 1, 1))
+
+
+def clustered(values: np.ndarray, per_draw: int) -> tuple[float, float]:
+    """Mean over futures and its standard error, clustered by draw."""
+    means = values.reshape(-1, per_draw).mean(axis=1)
+    error = means.std(ddof=1) / np.sqrt(means.size) if means.size > 1 else float("nan")
+    return float(means.mean()), float(error)
+
+
+def count_year(record: Record, quota_year: int) -> int:
+    """The year of the count that first shows what the take of ``quota_year`` did."""
+    return quota_year if record.season == "short" and record.count_when == "after" else quota_year + 1
+
+
+def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd.DataFrame:
+    """The table of years from what the kernel added up."""
+    record, draws, per_draw = prepared.record, len(prepared.rates), prepared.futures_per_draw
+    futures = prepared.futures
+    first = prepared.rates.first_year
+    table: dict[str, np.ndarray] = {
+        "quota_year": np.arange(first, first + years),
+        "count_year": np.array([count_year(record, first + t) for t in range(years)]),
+    }
+    for row, name in enumerate(("abundance", "removals", "quota")):
+        mean = tally.sums[:, row] / futures
+        table[f"{name}_mean"] = mean
+        error = np.sqrt(np.maximum(tally.sum_squares[:, row] / draws - mean**2, 0.0) / max(draws - 1, 1))
+        table[f"{name}_mean_se"] = error
+        if name == "quota" and not rule.feedback:
+            levels = np.full((years, len(LEVELS)), rule.settings[0])
+        else:
+            levels = np.array(
+                [
+                    quantiles(tally.counts[row, t], prepared.base, *tally.extremes[row, t], np.array(LEVELS))
+                    for t in range(years)
+                ]
+            )
+        for i, quantile_name in enumerate(_QUANTILE_NAMES):
+            table[f"{name}_{quantile_name}"] = levels[:, i]
+    for name, row in EVENT_COLUMNS.items():
+        p = tally.events[:, row] / futures
+        table[name] = p
+        table[f"{name}_se"] = event_error(p, tally.event_squares[:, row], draws, per_draw)
+    return pd.DataFrame(table)
+
+
+def _measures(prepared: Prepared, tally: Tally, years: int) -> pd.DataFrame:
+    """Measures over the whole projection from the summary rows, one a future."""
+    s, per_draw = tally.summary, prepared.futures_per_draw
+    mean_legal = s[kernel.TOTAL_LEGAL] / years
+    change = s[kernel.TOTAL_CHANGE] / max(years - 1, 1)
+    values = {
+        "mean yearly legal take": mean_legal,
+        "mean yearly change of the quota": change,
+        "ever below the limit": (s[kernel.FIRST_BELOW] > 0).astype(float),
+        "ever collapsed": (s[kernel.FIRST_COLLAPSED] > 0).astype(float),
+        "share of years closed": s[kernel.CLOSURES] / years,
+        "share of years with less to take than the quota": s[kernel.SHORTFALLS] / years,
+        "share of years held at zero by the growth curve": s[kernel.BOUNDED] / years,
+        "abundance at the end": s[kernel.FINAL],
+        "lowest abundance": s[kernel.LEAST],
+    }
+    rows = [(name, *clustered(v, per_draw)) for name, v in values.items()]
+    return pd.DataFrame(rows, columns=["measure", "value", "se"])
+
+
+def project_prepared(
+    prepared: Prepared,
+    rule: Rule,
+    years: int,
+    pool: ThreadPoolExecutor,
+    *,
+    seed: int = 0,
+    paths: int = 0,
+    progress: Progress | None = None,
+) -> Future:
+    """Project rates that are already laid out, on a pool of workers; see :func:`project`."""
+    tally = run(prepared, rule, years, pool, seed=seed, paths=paths, progress=progress)
+    return Future(
+        rule=rule,
+        by_year=_years_table(prepared, tally, rule, years),
+        measures=_measures(prepared, tally, years),
+        paths=tally.paths,
+        draws=len(prepared.rates),
+        futures_per_draw=prepared.futures_per_draw,
+        seed=seed,
+        record_digest=prepared.rates.record_digest,
+    )
+
+
+def project(
+    record: Record,
+    rates: Rates,
+    rule: Rule,
+    years: int | None = None,
+    *,
+    seed: int | None = None,
+    futures_per_draw: int = 1,
+    threads: int | None = None,
+    paths: int = 0,
+    progress: Progress | None = None,
+) -> Future:
+    """Project every draw under a rule.
+
+    Parameters
+    ----------
+    record, rates : Record, Rates
+    rule : Rule
+    years : int
+        Quota years, 1 to 500; default the record's horizon.
+    seed : int
+        Default: the seed of the rates.
+    futures_per_draw : int
+        1 to 256; with more than one, standard errors are clustered by draw.
+    threads : int
+        Default: the cores at hand. The result does not depend on it.
+    paths : int
+        How many single futures to keep.
+    progress : callable (done, total)
+
+    Raises
+    ------
+    SettingsError
+        A setting out of range.
+    """
+    if seed is not None and seed < 0:
+        raise SettingsError(f"seed {seed} is not allowed: give a whole number from 0")
+    with workers(threads) as pool:
+        return project_prepared(
+            prepare(record, rates, futures_per_draw=futures_per_draw),
+            rule,
+            record.objectives.horizon if years is None else years,
+            pool,
+            seed=rates.seed if seed is None else seed,
+            paths=paths,
+            progress=progress,
+        )

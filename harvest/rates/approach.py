@@ -1,0 +1,151 @@
+"""This year's abundance: from the latest usable absolute count, through the recorded removals, to the quota.
+
+In a short season a count sees X (before) or what the take leaves (after); in an all-year season X. From there
+each draw follows the yearly step with the removals on record (times its losses) and its own noise.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+from scipy import special
+
+from harvest.errors import RatesError
+from harvest.kernels.growth import growth_array
+from harvest.population import BY_NAME
+from harvest.rates.distributions import DOMAINS, quantile
+from harvest.rates.streams import stream
+from harvest.rates.table import Rates
+from harvest.record.model import Record, Survey
+
+
+@dataclass(frozen=True)
+class UsableCount:
+    """The latest usable absolute count: survey, its place in the history, the count and its CV."""
+
+    survey: Survey
+    row: int
+    count: float
+    cv: float
+
+
+def latest_usable_count(record: Record) -> UsableCount:
+    """The latest absolute count above zero with a CV; of several in one year, the one with the smallest CV.
+
+    Raises
+    ------
+    RatesError
+        If the record holds none.
+    """
+    found = [
+        UsableCount(survey, row, value, cv)
+        for survey in record.surveys
+        if survey.kind == "absolute"
+        for row, (value, cv) in enumerate(zip(survey.values, survey.cvs, strict=True))
+        if value is not None and value > 0 and cv is not None
+    ]
+    if not found:
+        raise RatesError(
+            "the record holds no usable absolute count (a count above zero with a CV): this year's abundance "
+            "cannot be told from an index or from nothing. Add one, or wait for the fit to the history"
+        )
+    return min(found, key=lambda c: (-c.row, c.cv))
+
+
+def animals_per_unit(record: Record) -> float:
+    """Animals per unit of abundance: 1, or by body mass (kg) where the unit is tonnes."""
+    if record.unit == "animals" or record.life.body_mass is None:
+        return 1.0
+    return 1000.0 / record.life.body_mass
+
+
+def approach(record: Record, table: pd.DataFrame, seed: int, notes: tuple[str, ...]) -> Rates:
+    """Add ``bias``, ``abundance``, ``counted`` and ``weather`` to a table of rates and make it Rates."""
+    usable = latest_usable_count(record)
+    draws, table = len(table), table.copy()
+    u = special.ndtr(stream(seed, f"bias of {usable.survey.name}").standard_normal(draws))
+    table["bias"] = quantile(usable.survey.bias, u, DOMAINS["bias"])
+    tau = math.sqrt(math.log1p(usable.cv**2))
+    z = stream(seed, "latest count").standard_normal(draws)
+    seen = usable.count / table["bias"].to_numpy() * np.exp(tau * z)
+
+    walk = _Walk(record, table, seed)
+    count_year, after = record.history.years[usable.row], usable.survey.when == "after"
+    at_count: dict[int, np.ndarray] = {count_year: seen}
+    abundance = walk.grow(seen, count_year) if after else seen
+    for year in range(count_year + 1 if after else count_year, record.quota_year):
+        left, abundance = walk.year(abundance, year)
+        at_count[year + (0 if after else 1)] = left if after else abundance
+    table["abundance"] = abundance
+    last = record.quota_year - 1 if after else record.quota_year
+    table["counted"] = at_count[last] if last in at_count else seen
+    table["weather"] = walk.weather if walk.weather is not None else np.zeros(draws)
+    nothing = np.full(draws, np.nan)
+    recent = [at_count.get(record.quota_year - back, nothing) for back in range(record.lag, 0, -1)]
+    return Rates(
+        table=table,
+        recent=np.array(recent).reshape(record.lag, draws),
+        origin="stated",
+        seed=seed,
+        first_year=record.quota_year,
+        count_year=count_year,
+        count_survey=usable.survey.name,
+        carried=walk.weather is not None,
+        notes=notes,
+        record_digest=record.digest(),
+    )
+
+
+class _Walk:
+    """The yearly step over the years between the count and the quota, all draws at once."""
+
+    def __init__(self, record: Record, table: pd.DataFrame, seed: int):
+        self.record, self.table, self.seed = record, table, seed
+        self.codes = table["curve"].map({n: c.code for n, c in BY_NAME.items()}).to_numpy(np.int64)
+        self.rates = [table[name].to_numpy(float) for name in ("r", "K", "shape")]
+        self.weather: np.ndarray | None = None
+        self.per_unit = animals_per_unit(record)
+
+    def removals(self, year: int) -> np.ndarray:
+        """Total removals of a year on record, draw by draw."""
+        history = self.record.history
+        reported = dict(zip(history.years, history.removals, strict=True)).get(year)
+        if reported is None:
+            raise RatesError(
+                f"removals of {year} are missing: each draw is projected from the count through every year "
+                f"to the quota of {self.record.quota_year}. Enter the removals of {year} (or the best estimate)"
+            )
+        t = self.table
+        return np.asarray(reported * (1.0 + t["wounding"] + t["unreported"]) + t["other"])
+
+    def grow(self, base: np.ndarray, year: int) -> np.ndarray:
+        """What ``base`` becomes by the next season: S(base)·Z, short season."""
+        step = np.maximum(0.0, base + growth_array(self.codes, base, *self.rates))
+        return self._environment(step, base, year)
+
+    def year(self, start: np.ndarray, year: int) -> tuple[np.ndarray, np.ndarray]:
+        """One recorded year from the season's start: (what the take left, next season's start)."""
+        wanted = self.removals(year)
+        if self.record.season == "short":
+            left = start - np.minimum(wanted, start)
+            return left, self.grow(left, year)
+        step = np.maximum(0.0, start + growth_array(self.codes, start, *self.rates))
+        return start, self._environment(step - np.minimum(wanted, step), start, year)
+
+    def _environment(self, step: np.ndarray, grown: np.ndarray, year: int) -> np.ndarray:
+        t = self.table
+        rho, sigma, demo = (t[name].to_numpy(float) for name in ("rho", "sigma", "sigma_demo"))
+        fresh = stream(self.seed, f"environment {year}").standard_normal(len(t))
+        if self.weather is None:
+            self.weather = fresh
+        else:
+            self.weather = rho * self.weather + np.sqrt(1.0 - rho * rho) * fresh
+        own = stream(self.seed, f"demography {year}").standard_normal(len(t))
+        spread = demo / np.sqrt(np.maximum(grown * self.per_unit, 1.0))
+        half = 0.5 if self.record.noise == "mean one" else 0.0
+        after = step * np.exp(sigma * self.weather + spread * own - half * (sigma**2 + spread**2))
+        gone = (demo > 0.0) & (after * self.per_unit < 1.0)
+        return np.where(gone, 0.0, after)

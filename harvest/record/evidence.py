@@ -1,0 +1,151 @@
+"""Checking the history against ``record.toml``: counts with their CVs, the quota year, what is missing."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from harvest.record.history import Table
+from harvest.record.model import Record, Survey
+from harvest.record.reporting import Report
+from harvest.record.schema import REMOVALS
+from harvest.record.tables import Values, get
+
+_LATEST_START = 6
+
+
+def check_counts(values: Values, table: Table, report: Report) -> None:
+    """Each count has a CV, and each count of zero a detection limit."""
+    for survey in values["survey"]:
+        counts = table.columns.get(get(survey, "column") or "")
+        if counts is None:
+            continue
+        cv_column = get(survey, "cv_column") or ""
+        cvs = table.columns.get(cv_column)
+        for index, count in enumerate(counts):
+            if count == 0 and "detection_limit" not in survey:
+                report.error(
+                    table.where(index, survey["column"]),
+                    "0",
+                    "a count of zero needs a detection limit",
+                    "Add detection_limit = … to the [[survey]]: the abundance below which it would see none. "
+                    "Leave the cell empty if there was no count.",
+                )
+            if cvs is not None:
+                _check_cv_there(table, index, cv_column, count, cvs[index], report)
+
+
+def _check_cv_there(
+    table: Table, index: int, column: str, count: float | None, cv: float | None, report: Report
+) -> None:
+    if count is not None and cv is None:
+        report.error(
+            table.where(index, column),
+            "nothing",
+            "each count needs its coefficient of variation",
+            "Write it, such as 0.15; where it is not known (or the count is zero), that of a like survey.",
+        )
+    if count is None and cv is not None:
+        report.warning(
+            table.where(index, column),
+            f"{cv:g}",
+            "a coefficient of variation without a count is not used",
+            "Write the count, or empty this cell.",
+        )
+
+
+def check_quota_year(values: Values, table: Table, report_toml: Report) -> None:
+    """The first quota year follows the recorded removals, and not by too much."""
+    first = get(values[""], "first_quota_year")
+    if first is None or table.years is None or REMOVALS not in table.columns:
+        return
+    taken = [y for y, h in zip(table.years, table.columns[REMOVALS], strict=True) if h is not None]
+    earliest = taken[-1] + 1 if taken else table.years[0]
+    latest = table.years[-1] + _LATEST_START
+    if not earliest <= first <= latest:
+        report_toml.error(
+            "first_quota_year",
+            str(first),
+            f"it must be from {earliest} (after the last recorded removals) to {latest}",
+            "Correct it, or take it out: it then follows from the history and the lag.",
+        )
+
+
+def warn_of_history(values: Values, table: Table, report: Report) -> None:
+    """Warnings that need the whole history."""
+    years, removals = table.years, table.columns.get(REMOVALS)
+    if years is None or removals is None:
+        return
+    if len(years) < 3:
+        cure = "Rates will rest on the stated ranges; add earlier years where they are known."
+        report.warning(
+            "", f"{len(years)} year(s)", "a history of 3 years or more says something about trends", cure
+        )
+    if any(h is not None for h in removals) and not any(removals):
+        cure = "If removals are not known, leave the cells empty; 0 says that nothing was taken."
+        report.warning(f"column {REMOVALS}", "0 in every year", "removals are usually above 0", cure)
+    for survey in values["survey"]:
+        counts = table.columns.get(get(survey, "column") or "")
+        if counts is not None:
+            _warn_of_survey(values, survey, counts, table, report)
+
+
+def _warn_of_survey(
+    values: Values, survey: Values, counts: tuple[float | None, ...], table: Table, report: Report
+) -> None:
+    column = survey["column"]
+    if not any(c is not None for c in counts):
+        report.warning(
+            f"column {column}", "no count in any year", "a survey has counts", "Add them, or take it out."
+        )
+    if get(survey, "kind") != "absolute" or moment(survey, values[""]) == "after":
+        return
+    for index, (count, taken) in enumerate(zip(counts, table.columns[REMOVALS], strict=True)):
+        if count and taken is not None and taken > count:
+            report.warning(
+                table.where(index, REMOVALS),
+                f"{taken:.15g}, with {column} = {count:.15g}",
+                "removals are usually below the count of the same year",
+                "Check both; counts are uncertain, so this can be right.",
+            )
+
+
+def moment(survey: Values, top: Values) -> Any:
+    """When a survey happens: its own ``when``, else the record's ``count_when``."""
+    return get(survey, "when") if "when" in survey else get(top, "count_when")
+
+
+def warn_of_abundance(record: Record, report_toml: Report, report_history: Report) -> None:
+    """Warn where this year's abundance cannot be had: no usable absolute count, or removals missing since."""
+    latest = find_latest_count(record)
+    if latest is None:
+        report_toml.warning(
+            "survey",
+            "no absolute count before the quota year",
+            "this year's abundance comes from an absolute count above 0",
+            "Add one, or no quota can be worked out.",
+        )
+        return
+    year, survey = latest
+    first = year + 1 if survey.when == "after" else year
+    taken = dict(zip(record.history.years, record.history.removals, strict=True))
+    missing = [y for y in range(first, record.quota_year) if taken.get(y) is None]
+    if missing:
+        report_history.warning(
+            f"column {REMOVALS}",
+            f"nothing for {', '.join(map(str, missing))}",
+            f"removals from the latest absolute count ({year}) to the quota year ({record.quota_year}) must be "
+            "known before a quota can be worked out",
+            "Write the removals of these years (an estimate, where nothing else is known).",
+        )
+
+
+def find_latest_count(record: Record) -> tuple[int, Survey] | None:
+    """The year and the survey of the latest absolute count above 0 that can serve the first quota year."""
+    found = [
+        (year, survey)
+        for survey in record.surveys
+        if survey.kind == "absolute"
+        for year, count in zip(record.history.years, survey.values, strict=True)
+        if count and year <= record.quota_year - (survey.when == "after")
+    ]
+    return max(found, key=lambda pair: pair[0]) if found else None
