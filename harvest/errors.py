@@ -8,9 +8,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-CAUTION = (
-    "A decision aid, not a permit: local regulators, treaties and licensed practice decide what may be taken."
-)
+CAUTION = "A decision aid, not a permit: local regulators, treaties and licensed practice decide what may be taken."
 
 
 class HarvestError(Exception):

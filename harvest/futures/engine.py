@@ -7,6 +7,7 @@ number of threads changes nothing in the result.
 
 from __future__ import annotations
 
+import itertools
 import math
 import os
 from collections.abc import Callable, Iterator
@@ -81,7 +82,7 @@ def make_blocks(codes: np.ndarray, draws_per_block: int) -> np.ndarray:
     """Blocks of one growth curve each: key, curve, first draw, number of draws; int64, shape (blocks, 4)."""
     starts = [0, *(np.flatnonzero(np.diff(codes)) + 1).tolist(), codes.size]
     rows: list[tuple[int, int, int, int]] = []
-    for begin, end in zip(starts[:-1], starts[1:], strict=True):
+    for begin, end in itertools.pairwise(starts):
         for first in range(begin, end, draws_per_block):
             rows.append((len(rows), int(codes[begin]), first, min(draws_per_block, end - first)))
     return np.array(rows, dtype=np.int64).reshape(-1, 4)
@@ -162,7 +163,8 @@ def counts_ahead(record: Record, rates: Rates, bias: float, years: int) -> tuple
     A count of year c serves the quota of year c + lag. Counts of years within the history are as recorded; from
     then on one is made every ``survey_plan.every`` years after the latest.
     """
-    history, survey = record.history, {}
+    history = record.history
+    survey: dict[int, tuple[float, float]] = {}
     for s in record.surveys:
         if s.kind == "absolute":
             for year, value, cv in zip(history.years, s.values, s.cvs, strict=True):
@@ -284,9 +286,7 @@ def _add_up(
             return fresh
 
     def chunk(first: int) -> tuple[np.ndarray, ...]:
-        sums = tuple(
-            np.zeros((years, m)) for m in (kernel.EVENTS, kernel.EVENTS, kernel.SUMMED, kernel.SUMMED)
-        )
+        sums = tuple(np.zeros((years, m)) for m in (kernel.EVENTS, kernel.EVENTS, kernel.SUMMED, kernel.SUMMED))
         mine = buffers()
         blocks = prepared.blocks[first : first + CHUNK]
         kernel.project_blocks(
@@ -297,12 +297,14 @@ def _add_up(
 
     total = [np.zeros((years, m)) for m in (kernel.EVENTS, kernel.EVENTS, kernel.SUMMED, kernel.SUMMED)]
     firsts = range(0, prepared.blocks.shape[0], CHUNK)
-    for done, sums in enumerate(pool.map(chunk, firsts), start=1):
-        for mine, more in zip(total, sums, strict=True):
+    for done, parts in enumerate(pool.map(chunk, firsts), start=1):
+        for mine, more in zip(total, parts, strict=True):
             mine += more
         if progress:
             progress(done, len(firsts))
     counts = sum((c for c, _ in made[1:]), start=made[0][0])
     least = np.min([e[..., 0] for _, e in made], axis=0)
     most = np.max([e[..., 1] for _, e in made], axis=0)
-    return Tally(summary, *total, counts, np.stack([least, most], axis=-1), paths)
+    events, event_squares, sums, sum_squares = total
+    extremes = np.stack([least, most], axis=-1)
+    return Tally(summary, events, event_squares, sums, sum_squares, counts, extremes, paths)

@@ -85,6 +85,17 @@ def count_year(record: Record, quota_year: int) -> int:
     return quota_year if record.season == "short" and record.count_when == "after" else quota_year + 1
 
 
+def _year_quantiles(tally: Tally, row: int, base: int) -> np.ndarray:
+    """Quantiles of one quantity by year, shape (years, levels)."""
+    levels, extremes = np.array(LEVELS), tally.extremes[row]
+    return np.array(
+        [
+            quantiles(c, base, float(e[0]), float(e[1]), levels)
+            for c, e in zip(tally.counts[row], extremes, strict=True)
+        ]
+    )
+
+
 def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd.DataFrame:
     """The table of years from what the kernel added up."""
     record, draws, per_draw = prepared.record, len(prepared.rates), prepared.futures_per_draw
@@ -102,12 +113,7 @@ def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd
         if name == "quota" and not rule.feedback:
             levels = np.full((years, len(LEVELS)), rule.settings[0])
         else:
-            levels = np.array(
-                [
-                    quantiles(tally.counts[row, t], prepared.base, *tally.extremes[row, t], np.array(LEVELS))
-                    for t in range(years)
-                ]
-            )
+            levels = _year_quantiles(tally, row, prepared.base)
         for i, quantile_name in enumerate(_QUANTILE_NAMES):
             table[f"{name}_{quantile_name}"] = levels[:, i]
     for name, row in EVENT_COLUMNS.items():

@@ -204,7 +204,7 @@ def recommend_quota(
         quota=quota,
         exact=exact,
         qualifies=qualifies,
-        at_edge=qualifies and question != "reduction" and exact >= curve.quotas[-1],
+        at_edge=bool(qualifies and question != "reduction" and exact >= curve.quotas[-1]),
         probability=at(quota)[1],
         se=at(quota)[2],
         miss=0.0 if qualifies else float(excess.min() if question == "reduction" else excess[0]),

@@ -59,9 +59,7 @@ class RiskCurve:
             A quota outside the curve, or a year beyond it.
         """
         if not self.quotas[0] <= quota <= self.quotas[-1]:
-            raise SettingsError(
-                f"quota {quota:g} is not on the risk curve, which ends at {self.quotas[-1]:g}"
-            )
+            raise SettingsError(f"quota {quota:g} is not on the risk curve, which ends at {self.quotas[-1]:g}")
         if not 1 <= year <= self.years:
             raise SettingsError(f"year {year} is not on the risk curve, which has {self.years} years")
         p, se = self.probability[event][:, year - 1], self.se[event][:, year - 1]
@@ -110,9 +108,7 @@ def trace_prepared(
         if progress:
             progress(i + 1, quotas.size)
     rates = prepared.rates
-    return RiskCurve(
-        quotas, probability, se, rates.first_year, draws, per_draw, seed, losses, rates.record_digest
-    )
+    return RiskCurve(quotas, probability, se, rates.first_year, draws, per_draw, seed, losses, rates.record_digest)
 
 
 def curve_years(record: Record) -> int:

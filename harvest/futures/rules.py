@@ -119,9 +119,7 @@ def rule_from(name: str, settings: Mapping[str, float]) -> Rule:
     missing = [n for n in names if n not in settings]
     if unknown or missing:
         told = [f"{n} is missing" for n in missing] + [f"{n} is unknown" for n in unknown]
-        raise SettingsError(
-            f"the rule {name} takes {', '.join((*names, 'without_count'))}: {'; '.join(told)}"
-        )
+        raise SettingsError(f"the rule {name} takes {', '.join((*names, 'without_count'))}: {'; '.join(told)}")
     return Rule(name, tuple(float(settings[n]) for n in names), float(settings.get("without_count", 0.8)))
 
 

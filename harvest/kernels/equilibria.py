@@ -18,7 +18,7 @@ def crossing(curve, r, k, s, level, low, high):
     rising = growth(curve, low, r, k, s) < growth(curve, high, r, k, s)
     for _ in range(400):
         middle = 0.5 * (low + high)
-        if middle == low or middle == high:
+        if middle in (low, high):
             break
         if (growth(curve, middle, r, k, s) < level) == rising:
             low = middle
@@ -56,7 +56,7 @@ def holding_yield(season, curve, r, k, s, x, out):
             low, high = 0.0, x[i]
             for _ in range(400):
                 middle = 0.5 * (low + high)
-                if middle == low or middle == high:
+                if middle in (low, high):
                     break
                 if middle + growth(curve[i], middle, r[i], k[i], s[i]) < x[i]:
                     low = middle

@@ -14,7 +14,7 @@ import numpy as np
 from harvest.kernels.codes import AFTER, BEFORE, MISSING, RECORDED, SHORT
 from harvest.kernels.compiling import SUMS, kernel
 from harvest.kernels.growth import fill_growth
-from harvest.kernels.histogram import BINS, bin_of
+from harvest.kernels.histogram import bin_of
 from harvest.kernels.randomness import DEMOGRAPHY, ENVIRONMENT, IMPLEMENTATION, SURVEY, fill_normals
 from harvest.kernels.rules import fill_quota
 from harvest.kernels.vectormath import exp

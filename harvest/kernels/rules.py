@@ -8,7 +8,7 @@ rule           settings (in order)                          quota for an estimat
 fixed quota    quota                                        quota
 fixed share    share                                        share · x
 escapement     escapement                                   max(0, x − escapement)
-ramp           lower, upper, share                          share · x · (x − lower)/(upper − lower), the fraction held in 0..1
+ramp           lower, upper, share                          share · x · f, f from 0 at lower to 1 at upper
 =============  ===========================================  =====================================
 """
 

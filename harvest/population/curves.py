@@ -103,7 +103,7 @@ GOMPERTZ = Curve(
     greatest_growth=lambda r, s: np.full_like(s, np.inf),
     slope=lambda n, r, k, s: (1.0 - s) * (k / n) ** s - 1.0,
     from_growth=lambda p, s, low: (np.full_like(p, np.nan), np.log1p(p) / np.log(1.0 / low)),
-    source="the Gompertz map, linear in logs (Dennis et al. 2006, doi:10.1890/0012-9615(2006)76[323:EDDPNA]2.0.CO;2)",
+    source="the Gompertz map, linear in logs (Dennis et al. 2006)",
 )
 ALLEE = Curve(
     name="allee",

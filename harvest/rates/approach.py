@@ -81,7 +81,7 @@ def approach(record: Record, table: pd.DataFrame, seed: int, notes: tuple[str, .
         at_count[year + (0 if after else 1)] = left if after else abundance
     table["abundance"] = abundance
     last = record.quota_year - 1 if after else record.quota_year
-    table["counted"] = at_count[last] if last in at_count else seen
+    table["counted"] = at_count.get(last, seen)
     table["weather"] = walk.weather if walk.weather is not None else np.zeros(draws)
     nothing = np.full(draws, np.nan)
     recent = [at_count.get(record.quota_year - back, nothing) for back in range(record.lag, 0, -1)]

@@ -24,14 +24,17 @@ class Spread:
     share: float = 1.0
 
     @classmethod
-    def of(cls, values: np.ndarray) -> Spread:
-        """Spread of values over draws; NaN marks draws in which the quantity does not exist."""
-        there = values[~np.isnan(values)]
+    def of(cls, sample: np.ndarray) -> Spread:
+        """Spread of a sample over draws; NaN marks draws in which the quantity does not exist."""
+        there = sample[~np.isnan(sample)]
         if there.size == 0:
-            return cls(*[float("nan")] * 5, share=0.0)
-        method = "linear" if np.isfinite(there).all() else "inverted_cdf"
-        low90, low50, median, high50, high90 = (float(v) for v in np.quantile(there, LEVELS, method=method))
-        return cls(low90, low50, median, high50, high90, there.size / values.size)
+            nothing = float("nan")
+            return cls(nothing, nothing, nothing, nothing, nothing, share=0.0)
+        finite = bool(np.isfinite(there).all())
+        levels = np.array(LEVELS)
+        values = np.quantile(there, levels, method="linear" if finite else "inverted_cdf")
+        low90, low50, median, high50, high90 = (float(v) for v in values)
+        return cls(low90, low50, median, high50, high90, there.size / sample.size)
 
     def plain(self) -> dict[str, float]:
         """As a dictionary."""

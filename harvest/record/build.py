@@ -42,9 +42,7 @@ def build_record(values: Values, table: Table) -> Record:
         curves=tuple(_build_curve(curve) for curve in values["curve"]),
         rates=_ordered("rates", values["rates"], without=("low_abundance",)),
         low_abundance=low_abundance,
-        correlations=tuple(
-            Correlation(c["between"][0], c["between"][1], c["value"]) for c in values["correlation"]
-        ),
+        correlations=tuple(_build_correlation(c) for c in values["correlation"]),
         life=LifeHistory(**_filled("life", values["life"])),
         objectives=Objectives(**_filled("objectives", values["objectives"])),
         losses=Losses(**_filled("losses", values["losses"])),
@@ -77,6 +75,11 @@ def _build_survey(given: Values, count_when: str, table: Table) -> Survey:
     stated = table.columns[filled["cv_column"]] if filled["cv_column"] else (filled["cv"],) * len(values)
     cvs = tuple(None if v is None else cv for v, cv in zip(values, stated, strict=True))
     return Survey(**{**filled, "when": filled["when"] or count_when}, values=values, cvs=cvs)
+
+
+def _build_correlation(given: Values) -> Correlation:
+    first, second = given["between"]
+    return Correlation(first, second, given["value"])
 
 
 def _build_curve(given: Values) -> CurveChoice:

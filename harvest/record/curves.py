@@ -72,9 +72,7 @@ def _report_both(where: str, report: Report) -> None:
 
 def _report_missing(where: str, key: str, report: Report) -> None:
     hint = "; 0 if the years are to be all alike" if key == "process_noise" else ""
-    report.error(
-        where, f"no {key}", f"a curve needs {key}", f"Add {key} to [rates], or to this curve alone{hint}."
-    )
+    report.error(where, f"no {key}", f"a curve needs {key}", f"Add {key} to [rates], or to this curve alone{hint}.")
 
 
 def check_correlations(values: Values, report: Report) -> None:

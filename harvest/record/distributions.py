@@ -65,9 +65,7 @@ def _check_kind(raw: dict[str, Any], where: str, report: Report) -> str | None:
         return kind
     guess = nearest(kind, DISTRIBUTIONS) if isinstance(kind, str) else None
     cure = (
-        f'Was "{guess}" meant?'
-        if guess
-        else 'Write for example { distribution = "uniform", low = …, high = … }.'
+        f'Was "{guess}" meant?' if guess else 'Write for example { distribution = "uniform", low = …, high = … }.'
     )
     report.error(f"{where}.distribution", show(kind), f"the distribution must be one of {known}", cure)
     return None

@@ -15,42 +15,49 @@ _LATEST_START = 6
 
 def check_counts(values: Values, table: Table, report: Report) -> None:
     """Each count has a CV, and each count of zero a detection limit."""
+    by_cv_column: dict[str, list[str]] = {}
     for survey in values["survey"]:
-        counts = table.columns.get(get(survey, "column") or "")
-        if counts is None:
+        column, cv_column = get(survey, "column"), get(survey, "cv_column")
+        if column not in table.columns:
             continue
-        cv_column = get(survey, "cv_column") or ""
-        cvs = table.columns.get(cv_column)
-        for index, count in enumerate(counts):
-            if count == 0 and "detection_limit" not in survey:
-                report.error(
-                    table.where(index, survey["column"]),
-                    "0",
-                    "a count of zero needs a detection limit",
-                    "Add detection_limit = … to the [[survey]]: the abundance below which it would see none. "
-                    "Leave the cell empty if there was no count.",
-                )
-            if cvs is not None:
-                _check_cv_there(table, index, cv_column, count, cvs[index], report)
+        if "detection_limit" not in survey:
+            _check_zeros(table, column, report)
+        if cv_column in table.columns:
+            by_cv_column.setdefault(cv_column, []).append(column)
+    for cv_column, columns in by_cv_column.items():
+        _check_cvs(table, cv_column, columns, report)
 
 
-def _check_cv_there(
-    table: Table, index: int, column: str, count: float | None, cv: float | None, report: Report
-) -> None:
-    if count is not None and cv is None:
-        report.error(
-            table.where(index, column),
-            "nothing",
-            "each count needs its coefficient of variation",
-            "Write it, such as 0.15; where it is not known (or the count is zero), that of a like survey.",
-        )
-    if count is None and cv is not None:
-        report.warning(
-            table.where(index, column),
-            f"{cv:g}",
-            "a coefficient of variation without a count is not used",
-            "Write the count, or empty this cell.",
-        )
+def _check_zeros(table: Table, column: str, report: Report) -> None:
+    for index, count in enumerate(table.columns[column]):
+        if count == 0:
+            report.error(
+                table.where(index, column),
+                "0",
+                "a count of zero needs a detection limit",
+                "Add detection_limit = … to the [[survey]]: the abundance below which it would see none. "
+                "Leave the cell empty if there was no count.",
+            )
+
+
+def _check_cvs(table: Table, cv_column: str, columns: list[str], report: Report) -> None:
+    """The CVs of one column, which several surveys may share."""
+    for index, cv in enumerate(table.columns[cv_column]):
+        counted = any(table.columns[column][index] is not None for column in columns)
+        if counted and cv is None:
+            report.error(
+                table.where(index, cv_column),
+                "nothing",
+                "each count needs its coefficient of variation",
+                "Write it, such as 0.15; where it is not known (or the count is zero), that of a like survey.",
+            )
+        elif cv is not None and not counted:
+            report.warning(
+                table.where(index, cv_column),
+                f"{cv:g}",
+                "a coefficient of variation without a count is not used",
+                "Write the count, or empty this cell.",
+            )
 
 
 def check_quota_year(values: Values, table: Table, report_toml: Report) -> None:
@@ -59,15 +66,26 @@ def check_quota_year(values: Values, table: Table, report_toml: Report) -> None:
     if first is None or table.years is None or REMOVALS not in table.columns:
         return
     taken = [y for y, h in zip(table.years, table.columns[REMOVALS], strict=True) if h is not None]
-    earliest = taken[-1] + 1 if taken else table.years[0]
+    earliest = max([table.years[0], *(y + 1 for y in taken[-1:]), *_list_count_years(values, table)])
     latest = table.years[-1] + _LATEST_START
     if not earliest <= first <= latest:
         report_toml.error(
             "first_quota_year",
             str(first),
-            f"it must be from {earliest} (after the last recorded removals) to {latest}",
+            f"it must be from {earliest} (after the recorded removals and counts) to {latest}",
             "Correct it, or take it out: it then follows from the history and the lag.",
         )
+
+
+def _list_count_years(values: Values, table: Table) -> list[int]:
+    """For each absolute survey, the first quota year that its latest count can serve."""
+    found = []
+    for survey in values["survey"]:
+        counts = table.columns.get(get(survey, "column") or "", ())
+        years = [y for y, count in zip(table.years or (), counts, strict=False) if count is not None]
+        if years and get(survey, "kind") == "absolute":
+            found.append(years[-1] + (moment(survey, values[""]) == "after"))
+    return found
 
 
 def warn_of_history(values: Values, table: Table, report: Report) -> None:
@@ -140,12 +158,15 @@ def warn_of_abundance(record: Record, report_toml: Report, report_history: Repor
 
 
 def find_latest_count(record: Record) -> tuple[int, Survey] | None:
-    """The year and the survey of the latest absolute count above 0 that can serve the first quota year."""
+    """The year and the survey of the latest absolute count above 0; of several, the one with the least CV."""
     found = [
-        (year, survey)
+        (year, -(cv or 0.0), survey)
         for survey in record.surveys
         if survey.kind == "absolute"
-        for year, count in zip(record.history.years, survey.values, strict=True)
+        for year, count, cv in zip(record.history.years, survey.values, survey.cvs, strict=True)
         if count and year <= record.quota_year - (survey.when == "after")
     ]
-    return max(found, key=lambda pair: pair[0]) if found else None
+    if not found:
+        return None
+    year, _, survey = max(found, key=lambda candidate: candidate[:2])
+    return year, survey

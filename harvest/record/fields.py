@@ -29,10 +29,15 @@ from harvest.record.schema import (
 
 SECTIONS: tuple[Section, ...] = (
     Section("", "The population."),
+    Section("survey", "One table for each survey; further [[survey]] tables may follow.", True, 0, 50, True),
     Section(
-        "survey", "One table for each survey, that is, each count column of the history.", True, 0, 50, True
+        "curve",
+        "One table for each growth curve that could be true; further [[curve]] tables may follow.",
+        True,
+        1,
+        len(CURVES),
+        True,
     ),
-    Section("curve", "One table for each growth curve that could be true.", True, 1, len(CURVES), True),
     Section("rates", "Ranges shared by all curves; each is a number, or a range of values.", shown=True),
     Section("correlation", "Rank correlations between two rates.", True, 0, 50),
     Section("life", "Life-history facts, where known.", shown=True),
@@ -187,13 +192,13 @@ FIELDS: tuple[Field, ...] = (
 
     Field("rule", "name", "choice", "Harvest rule.", True, choices=RULES, example="fixed share"),
     Field("rule", "quota", "number", "Quota of a fixed quota.", within=ZERO_OR_MORE, unit=_OWN_UNIT,
-          only_for=("fixed quota",), needed_for=("fixed quota",)),
+          example=50, only_for=("fixed quota",), needed_for=("fixed quota",)),
     Field("rule", "escapement", "number", "Abundance that is left in peace.", within=ZERO_OR_MORE,
-          unit=_OWN_UNIT, only_for=("escapement",), needed_for=("escapement",)),
+          unit=_OWN_UNIT, example=500, only_for=("escapement",), needed_for=("escapement",)),
     Field("rule", "lower", "number", "Count below which nothing is taken.", within=ZERO_OR_MORE,
-          unit=_OWN_UNIT, only_for=("ramp",), needed_for=("ramp",)),
+          unit=_OWN_UNIT, example=300, only_for=("ramp",), needed_for=("ramp",)),
     Field("rule", "upper", "number", "Count from which the full share is taken.", within=ABOVE_ZERO,
-          unit=_OWN_UNIT, only_for=("ramp",), needed_for=("ramp",)),
+          unit=_OWN_UNIT, example=600, only_for=("ramp",), needed_for=("ramp",)),
     Field("rule", "share", "proportion", "Share of the count to take.", within=SHARE,
           only_for=("fixed share", "ramp"), needed_for=("fixed share", "ramp"), example=0.1),
     Field("rule", "without_count", "proportion",

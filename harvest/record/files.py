@@ -69,9 +69,7 @@ def _read_bytes(folder: Path, name: str, limit: int, report: Report) -> bytes | 
             return None
         status = path.stat()
         if not stat.S_ISREG(status.st_mode):
-            report.error(
-                "", "a folder or device", "this must be a file", f"Put a file called {name} in its place."
-            )
+            report.error("", "a folder or device", "this must be a file", f"Put a file called {name} in its place.")
             return None
         if status.st_size > limit:
             _too_large(status.st_size, limit, report)
@@ -79,9 +77,7 @@ def _read_bytes(folder: Path, name: str, limit: int, report: Report) -> bytes | 
         with path.open("rb") as stream:
             data = stream.read(limit + 1)
     except FileNotFoundError:
-        report.error(
-            "", "no such file", f"the folder must hold {name}", "Check the file's name, or start anew."
-        )
+        report.error("", "no such file", f"the folder must hold {name}", "Check the file's name, or start anew.")
         return None
     except PermissionError:
         report.error(

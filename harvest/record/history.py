@@ -136,9 +136,7 @@ def _parse_rows(text: str, separator: str, report: Report) -> tuple[list[str], R
                 rows.append((number, cells))
             if len(rows) > _MOST_ROWS + 1:
                 cure = "Keep one row for each year."
-                report.error(
-                    f"row {number}", "too many rows", f"a history has at most {_MOST_ROWS} years", cure
-                )
+                report.error(f"row {number}", "too many rows", f"a history has at most {_MOST_ROWS} years", cure)
                 break
     except csv.Error as error:
         report.error(
@@ -150,18 +148,14 @@ def _parse_rows(text: str, separator: str, report: Report) -> tuple[list[str], R
         return None
     first, header = rows[0]
     if first != 1:
-        report.error(
-            "row 1", "an empty row", "the first row names the columns", "Take out the rows above it."
-        )
+        report.error("row 1", "an empty row", "the first row names the columns", "Take out the rows above it.")
     return [name.strip() for name in header], rows[1:]
 
 
 def _check_header(header: list[str], rows: Rows, wanted: Wanted, report: Report) -> dict[str, int] | None:
     """Where each known column is, or None where there is no header."""
     if len(header) > _MOST_COLUMNS:
-        report.error(
-            "row 1", f"{len(header):,} columns", f"at most {_MOST_COLUMNS} columns", "Take some out."
-        )
+        report.error("row 1", f"{len(header):,} columns", f"at most {_MOST_COLUMNS} columns", "Take some out.")
         return None
     if all(not name or parse_number(name) is not None for name in header):
         cure = f"Put a row above the data: {YEAR},{REMOVALS}, then the columns of the surveys."
@@ -172,9 +166,7 @@ def _check_header(header: list[str], rows: Rows, wanted: Wanted, report: Report)
         where = f"row 1, column {index + 1}"
         if not name:
             if any(len(cells) > index and cells[index].strip() for _, cells in rows):
-                report.error(
-                    where, "a column without a name", "each column has a name", "Name it or take it out."
-                )
+                report.error(where, "a column without a name", "each column has a name", "Name it or take it out.")
         elif name in places:
             cure = "Take out or rename one of the two."
             report.error(where, f"a second column {show(name)}", "each column stands once", cure)

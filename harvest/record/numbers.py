@@ -15,8 +15,8 @@ _CONTINENTAL = re.compile(r"[+-]?[0-9]{1,3}(\.[0-9]{3})+,[0-9]+")
 _WITH_UNIT = re.compile(r"[+-]?[0-9]+(\.[0-9]+)?\s*[^\W\d_].{0,20}")
 _DATE = re.compile(r"([0-9]{1,4})[-/. ]([0-9]{1,2}|[A-Za-z]{3,9})[-/. ]([0-9]{1,4})([ T].*)?")
 _NOTHING = frozenset(
-    ["n/a", "na", "nan", "#n/a", "nd", "n.d.", "nil", "none", "null", "missing", "unknown", "tbd", "x", "?"]
-    + ["-", "--", "–", "—", ".", "..", "*", "/", "no count", "no data", "not counted", "not done"]
+    {"n/a", "na", "nan", "#n/a", "nd", "n.d.", "nil", "none", "null", "missing", "unknown", "tbd", "x", "?"}
+    | {"-", "--", "–", "—", ".", "..", "*", "/", "no count", "no data", "not counted", "not done"}
 )
 #: Longer texts are not numbers; also keeps the patterns fast.
 _LONGEST = 60
@@ -68,9 +68,7 @@ def _separated(bare: str) -> tuple[str, str] | None:
         return "a thousands mark and a decimal comma", f"Write {plain}, with a point and no thousands mark."
     if _GROUPED.fullmatch(bare):
         plain = re.sub(rf"[,'’{_SPACES}]", "", bare)
-        doubt = (
-            f" (or {bare.replace(',', '.')} if the comma was a decimal comma)" if bare.count(",") == 1 else ""
-        )
+        doubt = f" (or {bare.replace(',', '.')} if the comma was a decimal comma)" if bare.count(",") == 1 else ""
         return "a thousands mark", f"Write {plain}, without a thousands mark{doubt}."
     if _DECIMAL_COMMA.fullmatch(bare):
         return "a decimal comma", f"Write {bare.replace(',', '.')}, with a point."

@@ -28,9 +28,7 @@ def check_season(values: Values, report: Report) -> None:
 
 def _report_moment(where: str, season: str, when: str, report: Report) -> None:
     choices = " or ".join(f'"{m}"' for m in COUNT_MOMENTS[season])
-    report.error(
-        where, show(when), f'with season "{season}" it must be {choices}', "Correct this or the season."
-    )
+    report.error(where, show(when), f'with season "{season}" it must be {choices}', "Correct this or the season.")
 
 
 def check_surveys(values: Values, report: Report) -> None:
@@ -54,9 +52,7 @@ def _check_once(name: str | None, seen: set[str], where: str, report: Report) ->
     if name is None:
         return
     if name in seen:
-        report.error(
-            where, show(name), "each survey has a name and a column of its own", "Rename or take out one."
-        )
+        report.error(where, show(name), "each survey has a name and a column of its own", "Rename or take out one.")
     seen.add(name)
 
 
@@ -113,9 +109,7 @@ def check_objectives(values: Values, report: Report) -> None:
     for aim, needs in (("recovery", ("limit", "target")), ("reduction", ("ceiling",))):
         if aim in objectives and not any(level in objectives for level in needs):
             cure = f"Add {needs[0]} = … to [objectives], or take {aim} out."
-            report.error(
-                f"objectives.{aim}", "an aim without its level", f"{aim} needs {' or '.join(needs)}", cure
-            )
+            report.error(f"objectives.{aim}", "an aim without its level", f"{aim} needs {' or '.join(needs)}", cure)
 
 
 def _is_above(first: Level | None, second: Level | None) -> bool:
@@ -161,9 +155,7 @@ def check_private(values: Values, report: Report) -> None:
     for name in get(values["private"], "fields") or ():
         guess = nearest(name, known)
         if name not in known:
-            cure = (
-                f"Was {guess} meant?" if guess else 'Write the keys with their table, such as "plan.author".'
-            )
+            cure = f"Was {guess} meant?" if guess else 'Write the keys with their table, such as "plan.author".'
             report.error("private.fields", show(name), "only keys of the record can be private", cure)
         elif name in seen:
             report.error("private.fields", show(name), "each key is named once", "Take out one of the two.")

@@ -62,6 +62,8 @@ class Interval:
         low = f"above {self.low:g}" if self.low_open else f"at least {self.low:g}"
         if self.high >= MAX_NUMBER:
             return low
+        if self.low == self.high:
+            return f"{self.low:g}"
         if not (self.low_open or self.high_open):
             return f"from {self.low:g} to {self.high:g}"
         return f"{low} and {'below' if self.high_open else 'at most'} {self.high:g}"
@@ -172,6 +174,16 @@ class Field:
             "list of names": 'a list of keys such as ["place", "plan.author"]',
         }
         return words[self.sort]
+
+    def brief(self) -> str:
+        """What is allowed, in a few words for the template; "" where the example says enough."""
+        if self.choices:
+            return " | ".join(f'"{c}"' for c in self.choices)
+        if self.within is None:
+            return ""
+        if self.sort == "whole number":
+            return f"whole number {self.within}"
+        return f"number or range, {self.within}" if self.sort == "distribution" else str(self.within)
 
 
 @dataclass(frozen=True)

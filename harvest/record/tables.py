@@ -59,15 +59,13 @@ def _explain_syntax(message: str, text: str, report: Report) -> None:
     lines = text.split("\n")
     number = int(match[1]) if match else len(lines)
     line = lines[number - 1].strip() if 0 < number <= len(lines) else ""
-    cure = next(
-        (c for start, c in _SYNTAX_CURES if start in message), "Compare the line with the sample record."
-    )
+    cure = next((c for start, c in _SYNTAX_CURES if start in message), "Compare the line with the sample record.")
+    if line.startswith("[") and "Cannot" in message:
+        cure = dict(_SYNTAX_CURES)["Cannot declare"]
     if any(mark in line for mark in "“”„‘’«»"):
         cure = 'Use straight quotes ("), not the curly ones of a word processor.'
     reason = re.sub(r"\s*\(at .*\)", "", message)
-    report.error(
-        f"line {number}", show(line), f"the file must follow the rules of TOML ({show(reason)})", cure
-    )
+    report.error(f"line {number}", show(line), f"the file must follow the rules of TOML ({show(reason)})", cure)
 
 
 def check_format(document: dict[str, Any], report: Report) -> bool:
@@ -121,9 +119,7 @@ def _check_single(section: Section, raw: Any, report: Report) -> Values:
 
 def _check_list(section: Section, raw: Any, report: Report) -> list[Values]:
     if isinstance(raw, dict):
-        report.error(
-            section.name, show(raw), f"it is a list of tables {section.header}", "Double the brackets."
-        )
+        report.error(section.name, show(raw), f"it is a list of tables {section.header}", "Double the brackets.")
         raw = [raw]
     tables = [] if raw is None else raw
     if not isinstance(tables, list) or not all(isinstance(t, dict) for t in tables):
@@ -179,22 +175,16 @@ def _check_presence(field: Field, raw: dict[str, Any], name: str | None, where: 
         if field.required or (name is not None and name in field.needed_for):
             whose = f' for "{name}"' if field.needed_for else ""
             hint = f": {field.rule()}" if field.sort != "choice" else f", {field.rule()}"
-            report.error(
-                where, "nothing", f"this key is needed{whose}", f"Add {field.key} = …{hint}. {field.help}"
-            )
+            report.error(where, "nothing", f"this key is needed{whose}", f"Add {field.key} = …{hint}. {field.help}")
         return False
     if field.only_for and name is not None and name not in field.only_for:
         names = " and ".join(f'"{n}"' for n in field.only_for)
-        report.error(
-            where, show(raw[field.key]), f'"{name}" has no {field.key}; it is for {names}', "Take it out."
-        )
+        report.error(where, show(raw[field.key]), f'"{name}" has no {field.key}; it is for {names}', "Take it out.")
         return False
     return True
 
 
-def _check_unknown(
-    raw: dict[str, Any], known: list[str], section: Section, prefix: str, report: Report
-) -> None:
+def _check_unknown(raw: dict[str, Any], known: list[str], section: Section, prefix: str, report: Report) -> None:
     unknown = [key for key in raw if key not in known]
     for key in unknown[:_MOST_UNKNOWN]:
         home = next((f.section for f in FIELDS if f.key == key and f.section != section.name), None)

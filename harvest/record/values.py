@@ -78,7 +78,7 @@ def _check_column_name(raw: str, where: str, report: Report) -> str | None:
         report.error(
             where,
             show(raw),
-            "a column's name begins with a letter, digit or _, without spaces around it, at most 100 characters",
+            "a column's name begins with a letter, digit or _, has no spaces around it, at most 100 long",
             "Rename the column here and in the history.",
         )
         return None
@@ -199,9 +199,7 @@ def _check_level(field: Field, raw: Any, where: str, report: Report) -> Level | 
     if set(raw) != {"of_capacity"} or value is None or value not in _OF_CAPACITY:
         found = show(raw["of_capacity"]) if set(raw) == {"of_capacity"} else show(raw)
         rule = f"a fraction of carrying capacity is {{ of_capacity = … }} with a number {_OF_CAPACITY}"
-        report.error(
-            where, found, rule, "Write for example { of_capacity = 0.3 }, or an abundance as a number."
-        )
+        report.error(where, found, rule, "Write for example { of_capacity = 0.3 }, or an abundance as a number.")
         return None
     return Level(value, of_capacity=True)
 

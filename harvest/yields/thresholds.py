@@ -79,9 +79,7 @@ def equilibrium_branches(record: Record, rates: Rates, quotas: np.ndarray) -> pd
     return pd.DataFrame(rows)
 
 
-def crossing_years(
-    record: Record, rates: Rates, quota: float, level: np.ndarray, *, falling: bool
-) -> np.ndarray:
+def crossing_years(record: Record, rates: Rates, quota: float, level: np.ndarray, *, falling: bool) -> np.ndarray:
     """Years of average environment until the counted abundance falls below a level, or is back at it.
 
     Shape (draws,); infinity where not within :data:`MOST_YEARS`.

@@ -1,0 +1,1 @@
+"""The commands of ``harvest``, one file each (the name, then an underscore)."""

@@ -1,0 +1,89 @@
+"""Options that several commands share, and what they do: seed, draws, threads, JSON, progress."""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+if TYPE_CHECKING:
+    from harvest.rates import Rates
+    from harvest.record import Record
+
+FOLDER = click.argument("folder", type=click.Path(path_type=Path))
+SEED = click.option("--seed", type=int, default=0, show_default=True, help="Seed of all random numbers.")
+DRAWS = click.option(
+    "--draws", type=int, default=10_000, show_default=True, help="States of nature to draw from the stated ranges."
+)
+THREADS = click.option("--threads", type=int, help="Threads to use; the results do not depend on it.")
+JSON = click.option(
+    "--json", "json_file", type=click.Path(path_type=Path), help="Also write the results to this JSON file."
+)
+
+
+def simulated(command: Callable[..., Any]) -> Callable[..., Any]:
+    """A command on a record's folder with seed, draws, threads and JSON."""
+    for option in (JSON, THREADS, DRAWS, SEED, FOLDER):
+        command = option(command)
+    return command
+
+
+def load(folder: Path) -> Record:
+    """Read a record; its warnings go to standard error, its errors stop the command."""
+    from harvest.errors import RecordError
+    from harvest.record import check_record
+
+    record, problems = check_record(folder)
+    if record is None:
+        raise RecordError(problems)
+    for problem in problems:
+        click.echo(str(problem), err=True)
+    return record
+
+
+def load_with_rates(folder: Path, seed: int, draws: int) -> tuple[Record, Rates]:
+    """Read a record and draw its rates, saying so where kernels must be compiled first."""
+    record = load(folder)
+    tell_compiling()
+    from harvest.rates import draw_rates
+
+    return record, draw_rates(record, seed, draws)
+
+
+def tell_compiling() -> None:
+    """On the very first run: say that kernels are being compiled, and for how long."""
+    from harvest.kernels.compiling import is_warm
+
+    if not is_warm():
+        click.echo("First run on this machine: compiling, once, some 20 seconds ...", err=True)
+
+
+class Progress:
+    """Progress of long work on standard error: a bar on a terminal, a line a task elsewhere."""
+
+    def __init__(self) -> None:
+        self.task = ""
+        self.bar = sys.stderr.isatty()
+
+    def __call__(self, task: str, done: int, total: int) -> None:
+        """Tell that ``done`` of ``total`` steps of a task are done."""
+        if self.bar:
+            width = 30 * done // total
+            end = "\n" if done == total else ""
+            click.echo(f"\r{task:<28} [{'#' * width}{'.' * (30 - width)}]{end}", nl=False, err=True)
+        elif task != self.task:
+            click.echo(f"computing: {task}", err=True)
+        self.task = task
+
+
+def write_json(json_file: Path | None, content: dict[str, Any]) -> None:
+    """Write the results as JSON where a file was asked for."""
+    if json_file is not None:
+        from harvest.plan.json_files import json_bytes
+        from harvest.writing import write_whole
+
+        write_whole(json_file, json_bytes(content))
+        click.echo(f"Written: {json_file}")

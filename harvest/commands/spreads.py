@@ -1,0 +1,32 @@
+"""Quantities over draws as rows of a table, for the commands that show them."""
+
+from __future__ import annotations
+
+from harvest.commands import show
+from harvest.plan import words
+from harvest.rates.spread import Spread
+
+HEADINGS = ("", "median", "50% from", "to", "90% from", "to")
+
+
+def row(label: str, spread: Spread, unit: str) -> list[str]:
+    """Label, median, 50% and 90% interval; ``unit`` is the record's unit, "rate", or "years"."""
+
+    def text(value: float) -> str:
+        if unit == "rate":
+            return words.small(value)
+        if unit == "years":
+            return words.number(value) if value == round(value) else f"{value:.1f}"
+        return words.number(value, unit)
+
+    if spread.share == 0.0:
+        return [label, "none", "", "", "", ""]
+    values = (spread.median, spread.low50, spread.high50, spread.low90, spread.high90)
+    if spread.share < 1.0:
+        label += f" (in the {words.short_probability(spread.share)} of draws that have one)"
+    return [label, *(text(v) for v in values)]
+
+
+def table(rows: list[list[str]]) -> None:
+    """Print rows of :func:`row`."""
+    show.grid(HEADINGS, rows)

@@ -1,0 +1,131 @@
+"""The quota table's parts as headed tables of values, once, for the screen and for Excel.
+
+A part is a title, columns (heading, kind of number) and rows of plain values; the writers only format.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+from harvest.plan import words
+from harvest.plan.table import QuotaTable
+
+Value = str | float | None
+
+
+@dataclass(frozen=True)
+class Part:
+    """One table: ``kinds`` are "text", "year", "amount", "probability" or "share"."""
+
+    title: str
+    note: str
+    headings: tuple[str, ...]
+    kinds: tuple[str, ...]
+    rows: tuple[tuple[Value, ...], ...]
+
+
+def _quota_part(table: QuotaTable) -> Part:
+    record, what = table.record, words.kind(table.record)
+    rows, feedback = table.rows, table.rule.feedback
+    spread = ("90% from", "to") if feedback else ()
+    headings = (
+        "Year",
+        "Legal quota",
+        *spread,
+        "Expected total removals",
+        "Next count",
+        "Abundance then",
+        "90% from",
+        "to",
+        "Below limit then",
+        "Ever below limit by then",
+        "Ever collapsed by then",
+    )
+    kinds = ("year", *["amount"] * (4 if feedback else 2), "year", *["amount"] * 3, *["probability"] * 3)
+    names = (
+        "quota_year",
+        "quota",
+        *(("quota_low90", "quota_high90") if feedback else ()),
+        "removals",
+        "count_year",
+        "abundance",
+        "abundance_low90",
+        "abundance_high90",
+        "below_limit",
+        "ever_below_limit",
+        "ever_collapsed",
+    )
+    values = tuple(tuple(float(row[n]) for n in names) for _, row in rows.iterrows())
+    note = f"In {what}; abundance {words.moment(record)}, median and 90% interval over futures."
+    if feedback:
+        note += (
+            f" {table.rates.first_year} is the quota to set; later years are medians of what the rule will give."
+        )
+    return Part(
+        f"Quota table, {words.years_words(table.rates.first_year, len(rows))}", note, headings, kinds, values
+    )
+
+
+def _card_part(table: QuotaTable) -> Part:
+    record = table.record
+    rows: list[tuple[Value, ...]] = []
+    for _, row in table.card.iterrows():
+        low, high, quota, share = (float(v) for v in row)
+        if math.isnan(low):
+            given: Value = quota
+            if not math.isnan(share):
+                given = f"{words.percent(share)} of the last quota"
+            rows.append(("no count made", None, given))
+        else:
+            rows.append((low, None if math.isnan(high) else high, quota))
+    next_count = f"The count that serves each year's quota, as counted ({words.moment(record)})."
+    return Part(
+        "Lookup card",
+        f"{next_count} Rule: {table.rule}. Quotas from each band's lower edge.",
+        ("Count from", "to below", "Legal quota"),
+        ("amount", "amount", "amount"),
+        tuple(rows),
+    )
+
+
+def _steps_part(table: QuotaTable) -> Part:
+    rows = tuple((r["step"], float(r["value"]), r["of"], r["why"]) for _, r in table.steps.iterrows())
+    note = f"In {words.kind(table.record)}" + ("." if table.rule.feedback else " a year.")
+    return Part("Why this number", note, ("Step", "Value", "Of", "Why"), ("text", "amount", "text", "text"), rows)
+
+
+def _compared_part(table: QuotaTable) -> Part:
+    limit = words.limit_words(table.record)
+    names = ("quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed")
+    kinds = ["amount", "text", "probability", "error", "probability"]
+    headings = ["Legal quota a year", "", "Ever below limit", "± Monte Carlo", "Ever collapsed"]
+    aim = table.recommendation.criterion
+    if aim.question != "limit":
+        names += ("meets",)
+        kinds.append("probability")
+        goal = "Back above limit" if aim.question == "recovery" else "Under the ceiling"
+        headings.append(f"{goal} in {aim.year} years")
+    rows = tuple(tuple(r[n] for n in names) for _, r in table.compared.iterrows())
+    note = f"Chances within {table.horizon} years under the same quota every year; the limit is {limit}."
+    return Part("Other quotas", note, tuple(headings), tuple(kinds), rows)
+
+
+def parts(table: QuotaTable) -> tuple[Part, ...]:
+    """Quota table, lookup card, steps, other quotas."""
+    return (_quota_part(table), _card_part(table), _steps_part(table), _compared_part(table))
+
+
+def shown(value: Value, kind: str, unit: str) -> str:
+    """A value as text on the screen."""
+    if value is None:
+        return "and above"
+    if isinstance(value, str):
+        return value
+    if kind == "year":
+        return f"{value:.0f}"
+    if kind == "probability":
+        return words.short_probability(value)
+    if kind == "error":
+        return words.error(value)
+    return words.number(value, unit)
