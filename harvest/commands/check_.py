@@ -15,7 +15,7 @@ from harvest.commands.options import FOLDER, JSON, SEED, write_json
 @SEED
 @JSON
 def command(folder: Path, seed: int, json_file: Path | None) -> None:
-    """Check the record in FOLDER and tell every problem with its cure (nothing is drawn: the seed is only noted)."""
+    """Check the record in FOLDER and tell every problem with its cure (nothing is drawn; the seed is noted)."""
     from harvest import __version__
     from harvest.commands import show
     from harvest.errors import CAUTION
@@ -36,9 +36,7 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
     else:
         years = record.history.years
         counts = ", ".join(f"{s.name}: {sum(v is not None for v in s.values)} counts" for s in record.surveys)
-        click.echo(
-            f"{record.name}: {years[0]} to {years[-1]}, {counts or 'no survey'}; {len(warnings)} warning(s)."
-        )
+        click.echo(f"{record.name}: {years[0]} to {years[-1]}, {counts or 'no survey'}; {len(warnings)} warning(s).")
         click.echo(f"The record can be used; it asks for the quota of {record.quota_year}.")
     show.caution()
     content = {

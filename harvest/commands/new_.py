@@ -17,6 +17,4 @@ def command(folder: Path, demo: str | None) -> None:
     from harvest.record import make_record
 
     make_record(folder, demo)
-    click.echo(
-        f"Made {folder / 'record.toml'} and {folder / 'history.csv'}: edit them, then: harvest check {folder}"
-    )
+    click.echo(f"Made {folder / 'record.toml'} and {folder / 'history.csv'}: edit them, then: harvest check {folder}")

@@ -10,6 +10,9 @@ from harvest.commands.options import Progress, load_with_rates, simulated, write
 from harvest.commands.rule_option import RULE, parse_rule
 
 
+_CHANCES = ("below_limit", "ever_below_limit", "ever_collapsed", "closed")
+
+
 @click.command("project")
 @simulated
 @RULE
@@ -65,7 +68,7 @@ def command(
                 words.number(r["abundance_median"], unit),
                 words.number(r["abundance_low90"], unit),
                 words.number(r["abundance_high90"], unit),
-                *(words.short_probability(r[c]) for c in ("below_limit", "ever_below_limit", "ever_collapsed", "closed")),
+                *(words.short_probability(r[c]) for c in _CHANCES),
             ]
             for _, r in table.iterrows()
         ],

@@ -19,9 +19,7 @@ from harvest.commands.rule_option import RULE, parse_rule
     type=click.Choice(["limit", "recovery", "reduction"]),
     help="What the quota must achieve; default by where the population stands.",
 )
-@click.option(
-    "--tolerance", type=float, help="Accepted chance of ever falling below the limit; default the record's."
-)
+@click.option("--tolerance", type=float, help="Accepted chance of ever falling below the limit; default the record's.")
 @click.option("--horizon", type=int, help="Quota years that the risk counts; default the record's.")
 @click.option("--plan-years", type=int, help="Years of the table, 1 to 10; default the record's.")
 @click.option("--futures", type=int, default=1, show_default=True, help="Futures a draw, 1 to 256.")

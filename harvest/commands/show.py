@@ -25,9 +25,7 @@ def paragraph(text: str) -> None:
 def grid(headings: Sequence[str], rows: Sequence[Sequence[str]], *, left: Sequence[int] = (0,)) -> None:
     """A table of texts: columns in ``left`` to the left, the others to the right; long texts wrapped."""
     align = ["left" if i in left else "right" for i in range(len(headings))]
-    wrapped = [
-        [textwrap.fill(str(cell), 48) if i in left else str(cell) for i, cell in enumerate(row)] for row in rows
-    ]
+    wrapped = [[textwrap.fill(str(cell), 48) if i in left else str(cell) for i, cell in enumerate(row)] for row in rows]
     heads = [textwrap.fill(h, 14) for h in headings]
     click.echo(tabulate(wrapped, heads, tablefmt="simple", colalign=align, disable_numparse=True))
 

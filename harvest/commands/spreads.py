@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from harvest.commands import show
 from harvest.plan import words
 from harvest.rates.spread import Spread
@@ -16,7 +18,8 @@ def row(label: str, spread: Spread, unit: str) -> list[str]:
         if unit == "rate":
             return words.small(value)
         if unit == "years":
-            return words.number(value) if value == round(value) else f"{value:.1f}"
+            whole = math.isinf(value) or value.is_integer()
+            return words.number(value) if whole else f"{value:.1f}"
         return words.number(value, unit)
 
     if spread.share == 0.0:

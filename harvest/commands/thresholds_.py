@@ -26,9 +26,7 @@ def command(
     found = find_thresholds(record, rates, quota)
     s, unit, moment = found.spreads, record.unit, words.moment(record)
     asked = words.number(found.quota, unit)
-    show.title(
-        f"{record.name}: thresholds under a legal quota of {asked} a year ({len(rates):,} draws, seed {seed})"
-    )
+    show.title(f"{record.name}: thresholds under a legal quota of {asked} a year ({len(rates):,} draws, seed {seed})")
     table(
         [
             row("Total removals that the quota brings, a year", s["removals"], unit),

@@ -89,10 +89,7 @@ def _year_quantiles(tally: Tally, row: int, base: int) -> np.ndarray:
     """Quantiles of one quantity by year, shape (years, levels)."""
     levels, extremes = np.array(LEVELS), tally.extremes[row]
     return np.array(
-        [
-            quantiles(c, base, float(e[0]), float(e[1]), levels)
-            for c, e in zip(tally.counts[row], extremes, strict=True)
-        ]
+        [quantiles(c, base, float(e[0]), float(e[1]), levels) for c, e in zip(tally.counts[row], extremes, strict=True)]
     )
 
 
@@ -125,21 +122,21 @@ def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd
 
 def _measures(prepared: Prepared, tally: Tally, years: int) -> pd.DataFrame:
     """Measures over the whole projection from the summary rows, one a future."""
-    s, per_draw = tally.summary, prepared.futures_per_draw
-    mean_legal = s[kernel.TOTAL_LEGAL] / years
-    change = s[kernel.TOTAL_CHANGE] / max(years - 1, 1)
-    values = {
-        "mean yearly legal take": mean_legal,
-        "mean yearly change of the quota": change,
-        "ever below the limit": (s[kernel.FIRST_BELOW] > 0).astype(float),
-        "ever collapsed": (s[kernel.FIRST_COLLAPSED] > 0).astype(float),
-        "share of years closed": s[kernel.CLOSURES] / years,
-        "share of years with less to take than the quota": s[kernel.SHORTFALLS] / years,
-        "share of years held at zero by the growth curve": s[kernel.BOUNDED] / years,
-        "abundance at the end": s[kernel.FINAL],
-        "lowest abundance": s[kernel.LEAST],
-    }
-    rows = [(name, *clustered(v, per_draw)) for name, v in values.items()]
+    rows = []
+    for name, row, scale in (
+        ("mean yearly legal take", kernel.TOTAL_LEGAL, years),
+        ("mean yearly change of the quota", kernel.TOTAL_CHANGE, max(years - 1, 1)),
+        ("ever below the limit", kernel.FIRST_BELOW, None),
+        ("ever collapsed", kernel.FIRST_COLLAPSED, None),
+        ("share of years closed", kernel.CLOSURES, years),
+        ("share of years with less to take than the quota", kernel.SHORTFALLS, years),
+        ("share of years held at zero by the growth curve", kernel.BOUNDED, years),
+        ("abundance at the end", kernel.FINAL, 1),
+        ("lowest abundance", kernel.LEAST, 1),
+    ):
+        values = tally.summary[row]
+        mean, error = clustered(values > 0 if scale is None else values, prepared.futures_per_draw)
+        rows.append((name, mean / (scale or 1), error / (scale or 1)))
     return pd.DataFrame(rows, columns=["measure", "value", "se"])
 
 

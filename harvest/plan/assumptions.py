@@ -18,15 +18,29 @@ Pairs = list[tuple[str, str]]
 
 def without_private(record: Record) -> Record:
     """The record with the texts of its private fields replaced, for everything that leaves the program."""
-    plain = {name: PRIVATE for name in ("name", "species", "place") if name in record.private}
-    plan = tuple((k, PRIVATE if f"plan.{k}" in record.private else v) for k, v in record.plan)
-    return replace(record, plan=plan, **plain)
+
+    def shown(name: str, text: str) -> str:
+        return PRIVATE if name in record.private else text
+
+    return replace(
+        record,
+        name=shown("name", record.name),
+        species=shown("species", record.species),
+        place=shown("place", record.place),
+        plan=tuple((key, shown(f"plan.{key}", text)) for key, text in record.plan),
+    )
+
+
+def _lag_words(lag: int) -> str:
+    if lag == 0:
+        return "in the year of the quota they serve"
+    return f"{lag} year{'s' if lag > 1 else ''} before the quota they serve"
 
 
 def _population(record: Record) -> Pairs:
     pairs = [
         ("Season", "one short season, then growth" if record.season == "short" else "removals all year"),
-        ("Counts", f"{words.moment(record)}, {record.lag} year(s) before the quota they serve"),
+        ("Counts", f"{words.moment(record)}, {_lag_words(record.lag)}"),
         ("Environment", f"lognormal yearly noise with {record.noise}"),
     ]
     total = sum(c.weight for c in record.curves)

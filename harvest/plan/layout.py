@@ -59,12 +59,8 @@ def _quota_part(table: QuotaTable) -> Part:
     values = tuple(tuple(float(row[n]) for n in names) for _, row in rows.iterrows())
     note = f"In {what}; abundance {words.moment(record)}, median and 90% interval over futures."
     if feedback:
-        note += (
-            f" {table.rates.first_year} is the quota to set; later years are medians of what the rule will give."
-        )
-    return Part(
-        f"Quota table, {words.years_words(table.rates.first_year, len(rows))}", note, headings, kinds, values
-    )
+        note += f" {table.rates.first_year} is the quota to set; later years are medians of what the rule will give."
+    return Part(f"Quota table, {words.years_words(table.rates.first_year, len(rows))}", note, headings, kinds, values)
 
 
 def _card_part(table: QuotaTable) -> Part:
@@ -75,8 +71,8 @@ def _card_part(table: QuotaTable) -> Part:
         if math.isnan(low):
             given: Value = quota
             if not math.isnan(share):
-                given = f"{words.percent(share)} of the last quota"
-            rows.append(("no count made", None, given))
+                given = f"{words.percent(share)} of last quota"
+            rows.append(("no count made", "", given))
         else:
             rows.append((low, None if math.isnan(high) else high, quota))
     next_count = f"The count that serves each year's quota, as counted ({words.moment(record)})."
@@ -97,12 +93,12 @@ def _steps_part(table: QuotaTable) -> Part:
 
 def _compared_part(table: QuotaTable) -> Part:
     limit = words.limit_words(table.record)
-    names = ("quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed")
+    names = ["quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed"]
     kinds = ["amount", "text", "probability", "error", "probability"]
     headings = ["Legal quota a year", "", "Ever below limit", "± Monte Carlo", "Ever collapsed"]
     aim = table.recommendation.criterion
     if aim.question != "limit":
-        names += ("meets",)
+        names.append("meets")
         kinds.append("probability")
         goal = "Back above limit" if aim.question == "recovery" else "Under the ceiling"
         headings.append(f"{goal} in {aim.year} years")

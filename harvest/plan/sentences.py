@@ -52,11 +52,14 @@ def findings(table: QuotaTable) -> list[str]:
     )
     quota = words.number(advice.quota, record.unit)
     told = []
-    if table.rule.feedback:
+    if table.rule.feedback or table.rule.settings[0] != advice.quota:
         p, se = table.rule_risk
         against = "within" if p <= record.objectives.tolerance else "above"
+        under = (
+            "Under the rule" if table.rule.feedback else f"With {words.number(table.first_quota, record.unit)} a year"
+        )
         told.append(
-            f"Under the rule the chance of ever falling below {words.limit_words(record)} in {table.horizon} years "
+            f"{under} the chance of ever falling below {words.limit_words(record)} in {table.horizon} years "
             f"is {words.probability(p)} ({words.error(se)} Monte Carlo), {against} your tolerance of "
             f"{words.percent(record.objectives.tolerance)}."
         )
@@ -69,26 +72,33 @@ def findings(table: QuotaTable) -> list[str]:
         way = "short" if aim.at_least else "above it"
         told.append(
             f"That misses by {words.percent(advice.miss)}"
-            + (
-                ": the best of the quotas examined."
-                if aim.question == "reduction"
-                else f" {way} even without a take."
-            )
-        )
-    if aim.question != "limit":
-        p, se = advice.limit_risk
-        told.append(
-            f"The chance of ever falling below {words.limit_words(record)} in {table.horizon} years is then "
-            f"{words.probability(p)} ({words.error(se)})."
+            + (": the best of the quotas examined." if aim.question == "reduction" else f" {way} even without a take.")
         )
     compared = [f"{words.probability(advice.zero[1])} without a take"]
     if advice.present is not None:
         present = words.number(advice.present[0], record.unit)
         compared.append(f"{words.probability(advice.present[1])} with the present quota of {present}")
-    told.append(f"The same chance is {' and '.join(compared)}.")
+    told.append(f"That chance is {' and '.join(compared)}.")
+    if aim.question != "limit":
+        told.append(_limit_sentence(table))
     for low, high in advice.further_runs:
         told.append(
             f"Quotas from {words.number(low, record.unit)} to {words.number(high, record.unit)} would qualify as "
             "well; a risk that falls as more is taken calls for a second look at the rates."
         )
+    return told
+
+
+def _limit_sentence(table: QuotaTable) -> str:
+    """What the recommended quota does to the lower limit, within the aim's years and if it goes on."""
+    record, advice = table.record, table.recommendation
+    year = advice.criterion.year
+    soon, _ = table.curve.at("ever_below_limit", advice.quota, year)
+    later, later_se = advice.limit_risk
+    told = (
+        f"The chance of ever falling below {words.limit_words(record)} is {words.probability(soon)} in those "
+        f"{year} years, and {words.probability(later)} ({words.error(later_se)}) if the same quota goes on for {table.horizon}."
+    )
+    if advice.criterion.question == "reduction" and later > record.objectives.tolerance:
+        told += " Stop this cull as soon as the count is under the ceiling: it is not a quota to keep."
     return told

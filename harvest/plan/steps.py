@@ -5,12 +5,13 @@ from __future__ import annotations
 import numpy as np
 import pandas as pd
 
+from harvest.futures.engine import counts_ahead
 from harvest.futures.recommend import Recommendation, read_off
 from harvest.futures.risk import RiskCurve
 from harvest.futures.rules import Rule
+from harvest.kernels.codes import RECORDED
 from harvest.plan import words
 from harvest.rates import Rates
-from harvest.rates.approach import latest_usable_count
 from harvest.record.model import Record
 from harvest.yields.reference import sustainable_today
 
@@ -35,9 +36,7 @@ def quota_steps(record: Record, rates: Rates, advice: Recommendation, without_lo
     msy = rates.closed_form("msy")
     rows: list[tuple[str, float, str, str]] = []
     if question == "limit":
-        rows.append(
-            ("Greatest sustainable yield", float(np.median(msy)), "total removals", "median over draws of MSY")
-        )
+        rows.append(("Greatest sustainable yield", float(np.median(msy)), "total removals", "median over draws of MSY"))
         rows.append(
             (
                 "Uncertain rates",
@@ -48,6 +47,8 @@ def quota_steps(record: Record, rates: Rates, advice: Recommendation, without_lo
         )
         why = f"chance of ever falling below {words.limit_words(record)} in {aim.year} years at most "
         why += words.percent(aim.bound) + ", with this year's abundance and the environment's noise"
+        if lossless > float(np.quantile(msy, aim.bound)):
+            why += " (more than the step above: within so few years a decline need not reach the limit)"
         rows.append(("Limit, abundance and bad years", lossless, "total removals", why))
     else:
         held = float(np.median(sustainable_today(record, rates)))
@@ -63,24 +64,31 @@ def quota_steps(record: Record, rates: Rates, advice: Recommendation, without_lo
     return pd.DataFrame(rows, columns=COLUMNS)
 
 
-def rule_steps(record: Record, rates: Rates, rule: Rule, first_quota: float) -> pd.DataFrame:
-    """Steps from the latest count to the first year's quota under a rule with feedback; columns as above."""
-    usable = latest_usable_count(record)
-    year = record.history.years[usable.row]
-    bias = float(np.median(rates.column("bias")))
-    rows = [
-        (
-            f"Latest count, {year}",
-            usable.count,
-            "abundance",
-            f"{usable.survey.name}, coefficient of variation {words.percent(usable.cv)}",
-        )
-    ]
-    if bias != 1.0:
-        rows.append(("Corrected for survey bias", usable.count / bias, "abundance", f"divided by {bias:.3g}"))
-    rows.append(("The rule", first_quota, "legal take", str(rule)))
+def rule_steps(record: Record, rates: Rates, rule: Rule, bias: float, first_quota: float) -> pd.DataFrame:
+    """Steps from the count on record to the first year's quota under a rule with feedback; columns as above.
+
+    Parameters
+    ----------
+    bias : float
+        What a count is divided by.
+    first_quota : float
+        Legal quota of the first year, rounded.
+    """
+    available, estimates = counts_ahead(record, rates, bias, 1)
     how = "whole animals" if record.unit == "animals" else "three significant figures"
-    rows[-1] = (rows[-1][0], first_quota, "legal take", f"{rule}; {how}, rounded down")
+    counted = rates.first_year - record.lag
+    rows: list[tuple[str, float, str, str]] = []
+    if available[0] == RECORDED:
+        estimate = float(estimates[0])
+        rows.append((f"Count of {counted}", estimate * bias, "abundance", "as counted"))
+        if bias != 1.0:
+            rows.append(("Corrected for survey bias", estimate, "abundance", f"divided by {bias:.3g}"))
+        why = str(rule)
+    else:
+        last = float(record.present_quota or 0.0)
+        rows.append(("Present quota", last, "legal take", f"no count of {counted} is on record"))
+        why = f"{words.percent(rule.without_count)} of the last quota in a year without a count"
+    rows.append(("The rule", first_quota, "legal take", f"{why}; {how}, rounded down"))
     return pd.DataFrame(rows, columns=COLUMNS)
 
 

@@ -104,8 +104,8 @@ def _trace(
     return trace_prepared(prepared, quotas, years, pool, seed=seed, losses=losses, progress=progress)
 
 
-def _rows(future: Future, rule: Rule, first: float, plan_years: int) -> pd.DataFrame:
-    """The table's rows from the projection's years."""
+def _rows(future: Future, rule: Rule, first: float, plan_years: int, unit: str) -> pd.DataFrame:
+    """The table's rows from the projection's years, quotas rounded down."""
     years = future.by_year.head(plan_years)
     rows = pd.DataFrame(
         {
@@ -123,8 +123,12 @@ def _rows(future: Future, rule: Rule, first: float, plan_years: int) -> pd.DataF
             "ever_collapsed": years["ever_collapsed"],
         }
     ).reset_index(drop=True)
-    fixed = slice(None) if not rule.feedback else 0
-    rows.loc[fixed, ["quota", "quota_low90", "quota_high90"]] = first
+    columns = ["quota", "quota_low90", "quota_high90"]
+    if rule.feedback:
+        rows[columns] = rows[columns].map(lambda quota: round_down(float(quota), unit))
+        rows.loc[0, columns] = first
+    else:
+        rows[columns] = first
     return rows
 
 
@@ -221,9 +225,9 @@ def make_quota_table(
         recommendation=advice,
         curve=curve,
         future=future,
-        rows=_rows(future, rule, rule.settings[0] if not feedback else first, plan_years),
+        rows=_rows(future, rule, first if feedback else rule.settings[0], plan_years, record.unit),
         card=lookup_card(record, rates, rule, bias),
-        steps=rule_steps(record, rates, rule, first)
+        steps=rule_steps(record, rates, rule, bias, first)
         if feedback
         else quota_steps(record, rates, advice, without_losses),
         compared=_compared(record, curve, advice, horizon),

@@ -58,7 +58,7 @@ def _two_figures(value: float) -> str:
 
 def error(se: float) -> str:
     """A Monte Carlo standard error of a probability, in percentage points."""
-    return f"±{_two_figures(100.0 * se)}"
+    return f"±{float(f'{100.0 * se:.1g}'):g}%" if se >= 0.00005 else "<0.01%"
 
 
 def kind(record: Record) -> str:

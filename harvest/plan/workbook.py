@@ -21,7 +21,15 @@ from harvest.plan.table import QuotaTable
 
 INK, MUTED, RULE, ABUNDANCE, RISK = "22292D", "5C656A", "D9D4C7", "1B6B72", "7A2E5D"
 _LINE = Border(bottom=Side(style="thin", color=RULE))
-_WIDTHS = {"text": 26.0, "year": 9.0, "amount": 13.0, "probability": 13.0, "error": 11.0}
+#: Excel formats by kind of number: probabilities are never shown as 0% or 100%.
+_KIND_FORMATS = {
+    "year": "0",
+    "probability": '[<0.001]"<0.1%";[>0.999]">99.9%";0.0%',
+    "error": "0.00%",
+    "share": "0.0%",
+    "index": "General",
+}
+_WIDTHS = {"share": 11.0, "index": 13.0, "text": 26.0, "year": 9.0, "amount": 13.0, "probability": 13.0, "error": 11.0}
 
 
 def _formats(unit: str, value: float) -> str:
@@ -35,7 +43,8 @@ def _formats(unit: str, value: float) -> str:
 def _put(cell: Cell, value: Value | int, kind: str, unit: str) -> None:
     """Write one value: numbers as numbers, text as text whatever it begins with."""
     cell.font = Font(color=INK)
-    cell.alignment = Alignment(vertical="top", wrap_text=True, horizontal="left" if kind == "text" else "right")
+    left = kind == "text"
+    cell.alignment = Alignment(vertical="top", wrap_text=True, horizontal="left" if left else "right", indent=int(left))
     if value is None:
         value = "and above"
     if isinstance(value, str):
@@ -44,9 +53,7 @@ def _put(cell: Cell, value: Value | int, kind: str, unit: str) -> None:
         cell.quotePrefix = is_risky(value)
         return
     cell.value = int(value) if kind == "year" else float(value)
-    cell.number_format = {"year": "0", "probability": "0.0%", "error": "0.00%"}.get(kind) or _formats(
-        unit, float(value)
-    )
+    cell.number_format = _KIND_FORMATS.get(kind) or _formats(unit, float(value))
 
 
 def _heading(sheet: Worksheet, row: int, headings: tuple[str, ...]) -> None:
@@ -56,7 +63,7 @@ def _heading(sheet: Worksheet, row: int, headings: tuple[str, ...]) -> None:
         cell.font = Font(bold=True, color="FFFFFF")
         cell.fill = PatternFill("solid", fgColor=ABUNDANCE)
         cell.alignment = Alignment(wrap_text=True, vertical="center", horizontal="center")
-    sheet.row_dimensions[row].height = 32
+    sheet.row_dimensions[row].height = 46
 
 
 def _line(sheet: Worksheet, row: int, text: str, font: Font, columns: int, per_line: int) -> None:
@@ -65,6 +72,7 @@ def _line(sheet: Worksheet, row: int, text: str, font: Font, columns: int, per_l
     cell = sheet.cell(row, 1)
     _put(cell, text, "text", "animals")
     cell.font = font
+    cell.alignment = Alignment(vertical="top", wrap_text=True)
     sheet.row_dimensions[row].height = font.size * 1.4 * max(1, -(-len(text) // per_line))
 
 
@@ -159,7 +167,7 @@ def _history_sheet(book: Workbook, table: QuotaTable) -> None:
     columns: list[tuple[Value, ...]] = [tuple(map(float, record.history.years)), record.history.removals]
     for survey in record.surveys:
         headings += [survey.name, "CV"]
-        kinds += ["amount", "probability"]
+        kinds += ["amount" if survey.kind == "absolute" else "index", "share"]
         columns += [survey.values, survey.cvs]
     rows = tuple(tuple("" if v is None else v for v in row) for row in zip(*columns, strict=True))
     note = f"As entered, in {words.kind(record)}; an index in its own unit."

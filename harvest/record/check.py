@@ -39,7 +39,7 @@ _RELATIONS = (
     check_rule,
     check_private,
 )
-_ATTEMPTS = 3
+_ATTEMPTS = 20
 
 
 def check_record(folder: str | os.PathLike[str]) -> Checked:
@@ -109,9 +109,7 @@ def _check(text: str | None, report: Report, read_history: ReadHistory) -> Check
     return record, (*report.problems, *history.problems)
 
 
-def _check_history(
-    name: str | None, values: Values | None, report: Report, read_history: ReadHistory
-) -> Table | None:
+def _check_history(name: str | None, values: Values | None, report: Report, read_history: ReadHistory) -> Table | None:
     """The history, as far as it can be read; without a sound ``record.toml`` only its years and removals."""
     if name is None:
         return None

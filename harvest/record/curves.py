@@ -105,7 +105,9 @@ def check_correlations(values: Values, report: Report) -> None:
 
 def _check_pair(names: Sequence[str], stated: set[str], where: str, report: Report) -> bool:
     if len(names) != 2 or names[0] == names[1]:
-        report.error(where, listed(names), "a correlation is between two different rates", "Name two rates.")
+        report.error(
+            where, listed(names) or "an empty list", "a correlation is between two different rates", "Name two rates."
+        )
         return False
     sound = True
     for name in names:

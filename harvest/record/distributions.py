@@ -64,9 +64,7 @@ def _check_kind(raw: dict[str, Any], where: str, report: Report) -> str | None:
     if isinstance(kind, str) and kind in DISTRIBUTIONS:
         return kind
     guess = nearest(kind, DISTRIBUTIONS) if isinstance(kind, str) else None
-    cure = (
-        f'Was "{guess}" meant?' if guess else 'Write for example { distribution = "uniform", low = …, high = … }.'
-    )
+    cure = f'Was "{guess}" meant?' if guess else 'Write for example { distribution = "uniform", low = …, high = … }.'
     report.error(f"{where}.distribution", show(kind), f"the distribution must be one of {known}", cure)
     return None
 
@@ -116,9 +114,7 @@ def _find_shape_fault(kind: str, values: dict[str, float]) -> tuple[str, str] | 
     return None
 
 
-def _find_range_fault(
-    field: Field, kind: str, values: dict[str, float], within: Interval
-) -> tuple[str, str] | None:
+def _find_range_fault(field: Field, kind: str, values: dict[str, float], within: Interval) -> tuple[str, str] | None:
     """The rule and the cure, where the distribution lies outside the allowed range."""
     if kind == "90% between":
         other = 'Use "triangular" or "uniform" for a range that touches this bound.'

@@ -95,9 +95,7 @@ def warn_of_history(values: Values, table: Table, report: Report) -> None:
         return
     if len(years) < 3:
         cure = "Rates will rest on the stated ranges; add earlier years where they are known."
-        report.warning(
-            "", f"{len(years)} year(s)", "a history of 3 years or more says something about trends", cure
-        )
+        report.warning("", f"{len(years)} year(s)", "a history of 3 years or more says something about trends", cure)
     if any(h is not None for h in removals) and not any(removals):
         cure = "If removals are not known, leave the cells empty; 0 says that nothing was taken."
         report.warning(f"column {REMOVALS}", "0 in every year", "removals are usually above 0", cure)
@@ -112,9 +110,7 @@ def _warn_of_survey(
 ) -> None:
     column = survey["column"]
     if not any(c is not None for c in counts):
-        report.warning(
-            f"column {column}", "no count in any year", "a survey has counts", "Add them, or take it out."
-        )
+        report.warning(f"column {column}", "no count in any year", "a survey has counts", "Add them, or take it out.")
     if get(survey, "kind") != "absolute" or moment(survey, values[""]) == "after":
         return
     for index, (count, taken) in enumerate(zip(counts, table.columns[REMOVALS], strict=True)):

@@ -50,29 +50,10 @@ def read_text(folder: Path, name: str, limit: int, report: Report) -> str | None
 
 
 def _read_bytes(folder: Path, name: str, limit: int, report: Report) -> bytes | None:
+    must = "the file must be readable"
     try:
-        home = folder.resolve()
-        path = (home / name).resolve()
-        if not home.is_dir():
-            what = "something that is not a folder" if home.exists() else "no such folder"
-            report.error(
-                "", what, "a record is a folder with record.toml and a history", "Check the folder's name."
-            )
-            return None
-        if path.parent != home and home not in path.parents:
-            report.error(
-                "",
-                "a link that leads out of the record's folder",
-                "all files of a record lie in its own folder",
-                "Put a copy of the file into the folder, in place of the link.",
-            )
-            return None
-        status = path.stat()
-        if not stat.S_ISREG(status.st_mode):
-            report.error("", "a folder or device", "this must be a file", f"Put a file called {name} in its place.")
-            return None
-        if status.st_size > limit:
-            _too_large(status.st_size, limit, report)
+        path = _find_file(folder, name, limit, report)
+        if path is None:
             return None
         with path.open("rb") as stream:
             data = stream.read(limit + 1)
@@ -80,22 +61,42 @@ def _read_bytes(folder: Path, name: str, limit: int, report: Report) -> bytes | 
         report.error("", "no such file", f"the folder must hold {name}", "Check the file's name, or start anew.")
         return None
     except PermissionError:
-        report.error(
-            "", "a file that may not be read", "the file must be readable", "Ask for the right to read it."
-        )
+        report.error("", "a file that may not be read", must, "Ask for the right to read it.")
         return None
-    except (OSError, ValueError, RuntimeError) as error:
-        report.error(
-            "",
-            f"a file that cannot be read ({show(str(error))})",
-            "the file must be readable",
-            "Check its name.",
-        )
+    except (OSError, ValueError, RuntimeError) as error:  # too long a name, links in a ring, a NUL in a name, ...
+        report.error("", f"a file that cannot be read ({show(str(error))})", must, "Check its name.")
         return None
     if len(data) > limit:
         _too_large(len(data), limit, report)
         return None
     return data
+
+
+def _find_file(folder: Path, name: str, limit: int, report: Report) -> Path | None:
+    """The file's true path, once it is seen to be a file of the folder within the size limit."""
+    home = folder.resolve()
+    path = (home / name).resolve()
+    if not home.is_dir():
+        what = "something that is not a folder" if home.exists() else "no such folder"
+        rule = "a record is a folder with record.toml and a history"
+        report.error("", what, rule, "Check the folder's name.")
+        return None
+    if home not in path.parents:
+        report.error(
+            "",
+            "a link that leads out of the record's folder",
+            "all files of a record lie in its own folder",
+            "Put a copy of the file into the folder, in place of the link.",
+        )
+        return None
+    status = path.stat()
+    if not stat.S_ISREG(status.st_mode):
+        report.error("", "a folder or device", "this must be a file", f"Put a file called {name} in its place.")
+        return None
+    if status.st_size > limit:
+        _too_large(status.st_size, limit, report)
+        return None
+    return path
 
 
 def _too_large(size: int, limit: int, report: Report) -> None:

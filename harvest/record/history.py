@@ -146,6 +146,9 @@ def _parse_rows(text: str, separator: str, report: Report) -> tuple[list[str], R
             "Check the quotes in this row; each opening quote needs a closing one.",
         )
         return None
+    if not rows:
+        report.error("", "only empty cells", "the history has a header and a row for each year", "Fill it in.")
+        return None
     first, header = rows[0]
     if first != 1:
         report.error("row 1", "an empty row", "the first row names the columns", "Take out the rows above it.")
@@ -283,9 +286,7 @@ def _check_cell(cell: str, where: str, is_cv: bool, report: Report) -> float | N
     if is_cv:
         return judge_cv(number, where, report)
     if number < 0:
-        report.error(
-            where, f"{number:g}", f"a number from 0 to {MAX_NUMBER:g}", "Correct it, or leave the cell empty."
-        )
+        report.error(where, f"{number:g}", f"a number from 0 to {MAX_NUMBER:g}", "Correct it, or leave the cell empty.")
         return None
     return number
 

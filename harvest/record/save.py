@@ -11,7 +11,7 @@ import os
 import sys
 from collections.abc import Iterator
 from contextlib import contextmanager, suppress
-from itertools import count
+from itertools import chain, count
 from pathlib import Path
 
 from harvest.errors import SettingsError
@@ -104,7 +104,8 @@ def _find_history(folder: Path) -> tuple[bool, str | None]:
     text = read_text(folder, RECORD_FILE, MAX_RECORD_BYTES, report)
     document = None if text is None or report.faulty else parse_toml(text, report)
     version = None if document is None else document.get("format")
-    if document is None or not isinstance(version, int) or not 1 <= version <= FORMAT:
+    known = isinstance(version, int) and not isinstance(version, bool) and 1 <= version <= FORMAT
+    if document is None or not known:
         return False, None
     name = check_value(field_at("history"), document.get("history", HISTORY_FILE), "history", report)
     return True, None if name is FAULTY else name
@@ -115,19 +116,16 @@ def _write_history(folder: Path, old: str | None, data: bytes) -> str:
     if old is not None and _holds(folder / old, data):
         return old
     stem, suffix = HISTORY_FILE.rsplit(".", 1)
-    for number in count(1):
-        name = HISTORY_FILE if number == 1 else f"{stem}-{number}.{suffix}"
-        if os.path.lexists(folder / name):
-            continue
-        try:
-            _write_new(folder / name, data)
-        except FileExistsError:
-            continue
-        except BaseException:
-            (folder / name).unlink(missing_ok=True)
-            raise
-        return name
-    raise AssertionError("unreachable")
+    names = chain([HISTORY_FILE], (f"{stem}-{number}.{suffix}" for number in count(2)))
+    name = next(name for name in names if not os.path.lexists(folder / name))
+    try:
+        _write_new(folder / name, data)
+    except FileExistsError:  # somebody else was quicker: it is theirs
+        raise
+    except BaseException:
+        (folder / name).unlink(missing_ok=True)
+        raise
+    return name
 
 
 def _holds(path: Path, data: bytes) -> bool:
@@ -139,8 +137,8 @@ def _holds(path: Path, data: bytes) -> bool:
 
 def _replace_record(folder: Path, history: str, data: bytes) -> None:
     unfinished = folder / _UNFINISHED
-    unfinished.unlink(missing_ok=True)
     try:
+        unfinished.unlink(missing_ok=True)  # of a process that was killed
         _write_new(unfinished, data)
         _flush_folder(folder)
         os.replace(unfinished, folder / RECORD_FILE)  # noqa: PTH105 (one named step, which the tests interrupt)

@@ -168,8 +168,7 @@ class Field:
             "CV": f"a coefficient of variation {within} (0.15 means 15 percent)",
             "choice": f"one of {choices}",
             "level": f"a number {within}, or a fraction of carrying capacity such as {{ of_capacity = 0.3 }}",
-            "distribution": f"a number {within}, or a range such as "
-            '{ distribution = "uniform", low = …, high = … }',
+            "distribution": f'a number {within}, or a range such as {{ distribution = "uniform", low = …, high = … }}',
             "years and chance": "a table such as { years = 10, chance = 0.8 }",
             "list of names": 'a list of keys such as ["place", "plan.author"]',
         }

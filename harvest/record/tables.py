@@ -132,15 +132,11 @@ def _check_list(section: Section, raw: Any, report: Report) -> list[Values]:
         return []
     if len(tables) < section.at_least:
         cure = (
-            f'Add {section.header} with name = "{CURVES[0]}".'
-            if section.name == "curve"
-            else f"Add {section.header}."
+            f'Add {section.header} with name = "{CURVES[0]}".' if section.name == "curve" else f"Add {section.header}."
         )
         report.error(section.name, "nothing", f"at least {section.at_least} {section.header} is needed", cure)
     if len(tables) > section.at_most:
-        report.error(
-            section.name, show(tables), f"at most {section.at_most} tables {section.header}", "Take some out."
-        )
+        report.error(section.name, show(tables), f"at most {section.at_most} tables {section.header}", "Take some out.")
     return [
         _check_table(section, table, f"{section.name} {number}", report)
         for number, table in enumerate(tables[: section.at_most], start=1)
@@ -158,19 +154,18 @@ def _check_table(
     section: Section, raw: dict[str, Any], prefix: str, report: Report, also: list[str] | None = None
 ) -> Values:
     values: Values = {}
-    for field in fields_of(section.name):
-        where = place(prefix, field.key)
+    for general in fields_of(section.name):
         name = values.get("name") if isinstance(values.get("name"), str) else None
-        if not _check_presence(field, raw, name, where, report):
-            continue
-        values[field.key] = check_value(field.narrowed(name), raw[field.key], where, report)
+        field, where = general.narrowed(name), place(prefix, general.key)
+        if _check_presence(field, raw, name, where, report):
+            values[field.key] = check_value(field, raw[field.key], where, report)
     known = [f.key for f in fields_of(section.name)] + (also or [])
     _check_unknown(raw, known, section, prefix, report)
     return values
 
 
 def _check_presence(field: Field, raw: dict[str, Any], name: str | None, where: str, report: Report) -> bool:
-    """Whether the key is there and belongs there; a fault otherwise noted."""
+    """Whether the key is there and belongs there; a fault is noted where it should and does not."""
     if field.key not in raw:
         if field.required or (name is not None and name in field.needed_for):
             whose = f' for "{name}"' if field.needed_for else ""

@@ -206,9 +206,7 @@ def _check_level(field: Field, raw: Any, where: str, report: Report) -> Level | 
 
 def _check_by_year(field: Field, raw: Any, where: str, report: Report) -> ByYear | None:
     if not isinstance(raw, dict) or set(raw) != {"years", "chance"}:
-        report.error(
-            where, show(raw), f"it must be {field.rule()}", "Write both years and chance, and nothing else."
-        )
+        report.error(where, show(raw), f"it must be {field.rule()}", "Write both years and chance, and nothing else.")
         return None
     years, chance = raw["years"], plain_number(raw["chance"])
     sound_years = isinstance(years, int) and not isinstance(years, bool) and years in _YEARS
@@ -224,9 +222,7 @@ def _check_by_year(field: Field, raw: Any, where: str, report: Report) -> ByYear
 
 def _check_names(field: Field, raw: Any, where: str, report: Report) -> tuple[str, ...] | None:
     if not isinstance(raw, list) or len(raw) > _MOST_NAMES or not all(isinstance(n, str) for n in raw):
-        report.error(
-            where, show(raw), f"it must be {field.rule()}", "Write the names in quotes, in square brackets."
-        )
+        report.error(where, show(raw), f"it must be {field.rule()}", "Write the names in quotes, in square brackets.")
         return None
     return tuple(raw)
 

@@ -17,9 +17,7 @@ from harvest.record.history import guard_note
 from harvest.record.model import FORMAT, ByYear, Distribution, Level, Record, Survey
 from harvest.record.schema import HISTORY_FILE, NOTE, RECORD_FILE, REMOVALS, YEAR
 
-_HEAD = (
-    "# A record of Harvest. Change it in any text editor, or in the program; comments are lost when the program\n"
-)
+_HEAD = "# A record of Harvest. Change it in any text editor, or in the program; comments are lost when the program\n"
 _HEAD += "# saves it. Every key is explained in the template of a new record.\n"
 #: Whole numbers up to here are written without a decimal point.
 _LARGEST_WHOLE = 1e15
@@ -51,9 +49,7 @@ def record_to_files(record: Record, history: str = HISTORY_FILE) -> tuple[str, s
     if found is None:
         raise RecordError(problems)
     if found != in_order(record):
-        _refuse(
-            "a record that the files cannot hold", "Check the CVs against their columns and the names of rates."
-        )
+        _refuse("a record that the files cannot hold", "Check the CVs against their columns and the names of rates.")
     return texts
 
 

@@ -54,9 +54,9 @@ def numbers(within: Interval) -> st.SearchStrategy[float]:
     """Numbers inside an interval, not too near an open end."""
     high = min(within.high, 1e6)
     edge = 1e-3 * (high - within.low)
-    return st.floats(
-        within.low + (edge if within.low_open else 0.0), high - (edge if within.high_open else 0.0)
-    ).map(lambda value: value + 0.0)
+    return st.floats(within.low + (edge if within.low_open else 0.0), high - (edge if within.high_open else 0.0)).map(
+        lambda value: value + 0.0
+    )
 
 
 @st.composite
@@ -146,9 +146,7 @@ def objectives(draw: st.DrawFn) -> Objectives:
     level = numbers(Interval(0, 1, True)) if fractions else amounts
     values = sorted(draw(st.lists(level, min_size=4, max_size=4)))
     keep = draw(st.lists(st.booleans(), min_size=4, max_size=4))
-    collapse, limit, target, ceiling = (
-        Level(v, fractions) if k else None for v, k in zip(values, keep, strict=True)
-    )
+    collapse, limit, target, ceiling = (Level(v, fractions) if k else None for v, k in zip(values, keep, strict=True))
     aims = st.none() | st.builds(ByYear, st.integers(1, 200), st.floats(0.01, 0.99))
     return Objectives(
         limit=limit,

@@ -78,7 +78,7 @@ def test_the_text_to_edit_is_sound() -> None:
         (LOGISTIC, LOGISTIC * 2, ["curve 2, name", "each curve stands once"]),
         (LOGISTIC, LOGISTIC + "weight = 0\n", ["curve 1, weight: found 0"]),
         (LOGISTIC, LOGISTIC + "shape = 2\n", ["curve 1, shape", '"logistic" has no shape']),
-        (LOGISTIC, '[[curve]]\nname = "allee"\n', ["curve 1, shape", 'needed for "allee"']),
+        (LOGISTIC, '[[curve]]\nname = "allee"\n', ["curve 1, shape", 'needed for "allee"', "below 1"]),
         (LOGISTIC, '[[curve]]\nname = "theta-logistic"\n', ["curve 1, shape", "needed"]),
         (LOGISTIC, '[[curve]]\nname = "theta-logistic"\nshape = 0\n', ["curve 1, shape: found 0"]),
         (LOGISTIC, '[[curve]]\nname = "allee"\nshape = 1\n', ["curve 1, shape: found 1", "below 1"]),
@@ -157,6 +157,7 @@ def test_an_error_is_found(old: str, new: str, words: list[str]) -> None:
         ('between = ["max_growth", "shape"]\nvalue = 0.1', ["must be stated"]),
         ('between = ["max_growth", "max_growth"]\nvalue = 0.1', ["two different rates"]),
         ('between = ["max_growth"]\nvalue = 0.1', ["two different rates"]),
+        ("between = []\nvalue = 0.1", ["an empty list", "two different rates"]),
         ('between = "max_growth"\nvalue = 0.1', ["correlation 1, between"]),
         ('between = ["max_growth", "carrying_capacity"]\nvalue = 1', ["correlation 1, value", "below 1"]),
         ('between = ["max_growth", "carrying_capacity"]', ["correlation 1, value", "found nothing"]),
@@ -222,15 +223,20 @@ def test_mean_of_year_is_for_an_index_only() -> None:
     toml = edited(edited(TOML, '"short"', '"all year"'), '"before"', '"mean of year"')
     toml = edited(toml, "lag = 0", "lag = 1")
     assert told(problems_of(toml), "error", "survey 1, when", "index only")
-    assert (
-        problems_of(edited(toml, 'kind = "absolute"', 'kind = "absolute"\nwhen = "start"'))[0].severity == "warning"
-    )
+    assert problems_of(edited(toml, 'kind = "absolute"', 'kind = "absolute"\nwhen = "start"'))[0].severity == "warning"
 
 
 def test_demographic_noise_in_tonnes_needs_a_body_mass() -> None:
     toml = edited(edited(TOML, '"animals"', '"tonnes"'), "process_noise", "demographic_noise = 0.5\nprocess_noise")
     assert told(problems_of(toml), "error", "rates.demographic_noise", "body_mass")
     assert problems_of(toml + "[life]\nbody_mass = 12\n") == ()
+
+
+def test_a_record_without_any_survey_is_only_warned_of() -> None:
+    toml = TOML[: TOML.index("[[survey]]")] + TOML[TOML.index("[[curve]]") :]
+    csv = "year,removals\n2019,80\n2020,85\n2021,90\n"
+    assert told(problems_of(toml, csv), "warning", "no absolute count")
+    assert not told(problems_of(toml, csv), "error")
 
 
 def test_private_fields_must_exist() -> None:

@@ -1,0 +1,93 @@
+"""Speed, side by side in one run: ``python -m tests.bench.measure`` prints what the README reports."""
+
+from __future__ import annotations
+
+import json
+import os
+import subprocess
+import sys
+import tempfile
+import time
+from dataclasses import replace
+from pathlib import Path
+
+from harvest.futures import Rule, pick_question, project, recommend_quota, trace_risk
+from harvest.futures.engine import prepare
+from harvest.rates import draw_rates
+from harvest.record import demo_folder, read_record
+from harvest.record.model import CurveChoice
+from tests.bench import whole_arrays
+
+REPLICATES, YEARS = 100_000, 50
+RULE = (1200.0, 2200.0, 0.14)
+
+
+def best_of(times, call):
+    """The best of several wall times of a call, in seconds."""
+    taken = []
+    for _ in range(times):
+        start = time.perf_counter()
+        call()
+        taken.append(time.perf_counter() - start)
+    return min(taken)
+
+
+def logistic_deer():
+    """The deer demo with the logistic curve alone, so that plain numpy needs no branches."""
+    record = read_record(demo_folder("deer"))
+    return replace(record, curves=(CurveChoice("logistic"),))
+
+
+def projection_ratio(rounds=3):
+    """Closed loop under the ramp with all noises: plain numpy on one thread over Harvest on two."""
+    record = logistic_deer()
+    rates = draw_rates(record, 1, REPLICATES)
+    prepared = prepare(record, rates)
+    rule = Rule("ramp", RULE)
+
+    def ours():
+        project(record, rates, rule, YEARS, threads=2)
+
+    ours()
+    theirs = {}
+    settings = (rates.table, record, RULE, prepared.tau, prepared.implementation, YEARS, 1)
+    seconds = best_of(rounds, ours)
+    theirs["whole arrays"] = best_of(rounds, lambda: whole_arrays.whole(*settings))
+    for chunk in (1000, 5000, 20_000):
+        theirs[f"chunks of {chunk:,}"] = best_of(rounds, lambda c=chunk: whole_arrays.chunked(*settings, c))
+    seconds = min(seconds, best_of(rounds, ours))
+    return {"harvest, two threads": seconds, **theirs, "ratio": min(theirs.values()) / seconds}
+
+
+def recommendation_seconds(rounds=5):
+    """The recommended quota of a demo: 50 quotas × 10,000 futures × 20 years, warm."""
+    record = read_record(demo_folder("deer"))
+    rates = draw_rates(record, 1, 10_000)
+
+    def ours():
+        curve = trace_risk(record, rates, points=50, years=20)
+        recommend_quota(record, curve, pick_question(record, rates))
+
+    ours()
+    return best_of(rounds, ours)
+
+
+def command_seconds():
+    """The main command as a whole process: the very first run (kernels compiled) and a later one."""
+    with tempfile.TemporaryDirectory() as place:
+        environment = {**os.environ, "HARVEST_CACHE": place}
+        command = [sys.executable, "-m", "harvest", "quota", str(demo_folder("deer")), "--out", str(Path(place) / "out")]
+
+        def run():
+            subprocess.run(command, env=environment, check=True, capture_output=True)
+
+        return {"first run": best_of(1, run), "later run": best_of(3, run)}
+
+
+if __name__ == "__main__":
+    found = {
+        f"projection, {REPLICATES:,} × {YEARS}": projection_ratio(),
+        "recommended quota, warm, seconds": recommendation_seconds(),
+        "harvest quota, whole process, seconds": command_seconds(),
+    }
+    print(json.dumps(found, indent=1))
