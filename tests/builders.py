@@ -29,7 +29,10 @@ def make_survey(values: dict[int, float], years: tuple[int, ...], cv: float = 0.
     cvs = more.pop("cvs", {})
     return Survey(
         **{"name": "count", "column": "count", "kind": "absolute", "when": "before", "cv": cv}
-        | {"values": counts, "cvs": tuple(None if c is None else cvs.get(y, cv) for y, c in zip(years, counts, strict=True))}
+        | {
+            "values": counts,
+            "cvs": tuple(None if c is None else cvs.get(y, cv) for y, c in zip(years, counts, strict=True)),
+        }
         | more
     )
 

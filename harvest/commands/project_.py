@@ -9,7 +9,6 @@ import click
 from harvest.commands.options import Progress, load_with_rates, simulated, write_json
 from harvest.commands.rule_option import RULE, parse_rule
 
-
 _CHANCES = ("below_limit", "ever_below_limit", "ever_collapsed", "closed")
 
 

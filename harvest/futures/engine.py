@@ -24,9 +24,10 @@ from harvest.kernels import projection as kernel
 from harvest.kernels.codes import MISSING, RECORDED, SEASON_CODES, SIMULATED, WHEN_CODES
 from harvest.kernels.histogram import BINS, base_of
 from harvest.rates import Rates
-from harvest.rates.approach import animals_per_unit, latest_usable_count
+from harvest.rates.approach import animals_per_unit, latest_usable_count, usable_counts
 from harvest.rates.distributions import DOMAINS, quantile
-from harvest.record.model import Record
+from harvest.rates.draw import check_seed_and_draws
+from harvest.record.model import Record, Survey
 
 #: Blocks that one task runs: fixed, so that sums do not depend on threads.
 CHUNK = 32
@@ -88,12 +89,16 @@ def make_blocks(codes: np.ndarray, draws_per_block: int) -> np.ndarray:
     return np.array(rows, dtype=np.int64).reshape(-1, 4)
 
 
+def stated_bias(survey: Survey) -> float:
+    """What a survey's counts are divided by: the median of its stated bias."""
+    return float(quantile(survey.bias, np.array([0.5]), DOMAINS["bias"])[0])
+
+
 def survey_error(record: Record) -> tuple[float, float]:
     """The survey of the years ahead: standard deviation of log, and the bias that counts are divided by."""
     usable = latest_usable_count(record)
     cv = record.survey_plan.cv if record.survey_plan.cv is not None else usable.cv
-    bias = float(quantile(usable.survey.bias, np.array([0.5]), DOMAINS["bias"])[0])
-    return math.sqrt(math.log1p(cv * cv)), bias
+    return math.sqrt(math.log1p(cv * cv)), stated_bias(usable.survey)
 
 
 def prepare(record: Record, rates: Rates, *, futures_per_draw: int = 1, losses: bool = True) -> Prepared:
@@ -157,26 +162,20 @@ def prepare(record: Record, rates: Rates, *, futures_per_draw: int = 1, losses: 
     )
 
 
-def counts_ahead(record: Record, rates: Rates, bias: float, years: int) -> tuple[np.ndarray, np.ndarray]:
+def counts_ahead(record: Record, rates: Rates, years: int) -> tuple[np.ndarray, np.ndarray]:
     """What a rule has in each quota year: a recorded count, a simulated one or none; and recorded estimates.
 
-    A count of year c serves the quota of year c + lag. Counts of years within the history are as recorded; from
-    then on one is made every ``survey_plan.every`` years after the latest.
+    A count of year c serves the quota of year c + lag, divided by its own survey's bias. Counts of years within
+    the history are as recorded; from then on one is made every ``survey_plan.every`` years after the latest.
     """
-    history = record.history
-    survey: dict[int, tuple[float, float]] = {}
-    for s in record.surveys:
-        if s.kind == "absolute":
-            for year, value, cv in zip(history.years, s.values, s.cvs, strict=True):
-                if value is not None and value > 0 and cv is not None:
-                    best = survey.get(year)
-                    survey[year] = min((cv, value), best) if best else (cv, value)
+    on_record = usable_counts(record)
     kind, estimate = np.full(years, SIMULATED, np.int64), np.zeros(years)
     for t in range(years):
         counted = rates.first_year + t - record.lag
-        if counted in survey:
-            kind[t], estimate[t] = RECORDED, survey[counted][1] / bias
-        elif counted <= history.years[-1] or (counted - rates.count_year) % record.survey_plan.every:
+        if counted in on_record:
+            usable = on_record[counted]
+            kind[t], estimate[t] = RECORDED, usable.count / stated_bias(usable.survey)
+        elif counted <= record.history.years[-1] or (counted - rates.count_year) % record.survey_plan.every:
             kind[t] = MISSING
     return kind, estimate
 
@@ -224,11 +223,12 @@ def run(
     Raises
     ------
     SettingsError
-        Years out of range, or a rule that needs the last quota in a year without a count and none is known.
+        Years or seed out of range, or a rule that needs the last quota in a year without a count and none is known.
     """
     check_years(years)
+    check_seed_and_draws(seed, len(prepared.rates))
     record, rates = prepared.record, prepared.rates
-    available, recorded = counts_ahead(record, rates, prepared.bias, years)
+    available, recorded = counts_ahead(record, rates, years)
     if rule.feedback and available[0] == MISSING and record.present_quota is None:
         raise SettingsError(
             f"there is no count for the quota of {rates.first_year}, so the rule starts from the present "

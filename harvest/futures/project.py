@@ -9,7 +9,6 @@ import numpy as np
 import pandas as pd
 
 from harvest import __version__
-from harvest.errors import SettingsError
 from harvest.futures.engine import Prepared, Progress, Tally, prepare, run, workers
 from harvest.futures.rules import Rule
 from harvest.kernels import projection as kernel
@@ -199,8 +198,6 @@ def project(
     SettingsError
         A setting out of range.
     """
-    if seed is not None and seed < 0:
-        raise SettingsError(f"seed {seed} is not allowed: give a whole number from 0")
     with workers(threads) as pool:
         return project_prepared(
             prepare(record, rates, futures_per_draw=futures_per_draw),

@@ -111,7 +111,8 @@ def criterion_of(
         bound = aims.tolerance if tolerance is None else tolerance
         if not 0.0 < bound < 1.0:
             raise SettingsError(f"risk tolerance {bound:g} is not allowed: give a number between 0 and 1")
-        return Criterion(question, "ever_below_limit", horizon or aims.horizon, bound, at_least=False)
+        year = aims.horizon if horizon is None else horizon
+        return Criterion(question, "ever_below_limit", year, bound, at_least=False)
     if question == "recovery":
         aim = aims.recovery or _DEFAULT_AIM
         return Criterion(question, "back_above_limit", aim.years, aim.chance, at_least=True)
@@ -186,11 +187,13 @@ def recommend_quota(
         A setting out of range, or years that the curve does not cover.
     """
     criterion = criterion_of(record, question, tolerance=tolerance, horizon=horizon)
-    if criterion.year > curve.years:
-        raise SettingsError(f"year {criterion.year} is beyond the risk curve, which has {curve.years} years")
+    if not 1 <= criterion.year <= curve.years:
+        raise SettingsError(f"year {criterion.year} is not on the risk curve, which has {curve.years} years")
     exact, qualifies, further = read_off(curve, criterion)
     if question == "reduction":
-        quota = min(round_up(exact, record.unit), float(curve.quotas[-1]))
+        quota = round_up(exact, record.unit)
+        if quota > curve.quotas[-1]:  # a curve that ends between two whole animals
+            quota = round_down(float(curve.quotas[-1]), record.unit)
     else:
         quota = round_down(exact, record.unit)
     excess = criterion.excess(curve)
@@ -198,7 +201,7 @@ def recommend_quota(
     def at(value: float) -> tuple[float, float, float]:
         return (value, *curve.at(criterion.event, value, criterion.year))
 
-    horizon = min(horizon or record.objectives.horizon, curve.years)
+    horizon = min(record.objectives.horizon if horizon is None else horizon, curve.years)
     return Recommendation(
         criterion=criterion,
         quota=quota,

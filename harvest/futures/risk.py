@@ -12,6 +12,7 @@ from harvest import __version__
 from harvest.errors import SettingsError
 from harvest.futures.engine import Prepared, Progress, prepare, run, workers
 from harvest.futures.project import EVENT_COLUMNS, event_error
+from harvest.futures.rounding import round_up
 from harvest.futures.rules import fixed_quota
 from harvest.rates import Rates
 from harvest.record.model import Record
@@ -67,14 +68,17 @@ class RiskCurve:
 
 
 def highest_quota(record: Record, rates: Rates) -> float:
-    """Where the curve ends unless stated: well beyond the fold, the present quota and a cull to the ceiling."""
+    """Where the curve ends unless stated: well beyond the fold, the present quota and a cull to the ceiling.
+
+    Rounded up as a quota is, so that a smallest cull rounded up is still on the curve.
+    """
     factor = rates.factor
     fold = np.maximum(0.0, (rates.closed_form("msy") - rates.column("other")) / factor)
     tops = [1.3 * float(np.quantile(fold, 0.95)), 1.3 * (record.present_quota or 0.0)]
     if record.objectives.ceiling is not None:
         surplus = rates.column("abundance") - rates.level(record.objectives.ceiling, 0.0)
         tops.append(1.3 * float(np.quantile(np.maximum(0.0, surplus) / factor + fold, 0.95)))
-    return max(tops) or 1.0
+    return round_up(max(tops) or 1.0, record.unit)
 
 
 def check_quotas(quotas: Sequence[float] | np.ndarray) -> np.ndarray:

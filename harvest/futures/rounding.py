@@ -12,7 +12,7 @@ def _step(value: float, unit: str) -> float:
     """The rounding step: one animal, or the third significant figure of tonnes."""
     if unit == "animals" or value == 0.0:
         return 1.0
-    return 10.0 ** (math.floor(math.log10(value) + SLACK) - 2)
+    return 10.0 ** (math.floor(math.log10(value)) - 2)
 
 
 def _rounded(value: float, unit: str, whole: int, step: float) -> float:

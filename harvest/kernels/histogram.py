@@ -7,6 +7,7 @@ Bin 0 holds zero and whatever is smaller than 2^-30 of the reference.
 from __future__ import annotations
 
 import math
+from functools import cache
 
 import numpy as np
 
@@ -29,11 +30,13 @@ def bin_of(value, base):
     return min(max(index, 0), BINS - 1)
 
 
+@cache
 def edges(base: int) -> np.ndarray:
     """Lower edges of all bins and the upper edge of the last, shape (BINS + 1,); the first two are 0 and tiny."""
     bits = (np.arange(BINS + 1, dtype=np.int64) + base) << 44
     lower = bits.view(np.float64).copy()
     lower[0] = 0.0
+    lower.flags.writeable = False
     return lower
 
 
@@ -48,11 +51,13 @@ def quantiles(counts: np.ndarray, base: int, least: float, most: float, q: np.nd
     q : ndarray
         Probabilities.
     """
-    total = counts.sum()
-    cumulative = np.concatenate([[0.0], np.cumsum(counts)])
-    rank = q * (total - 1) + 0.5
-    index = np.clip(np.searchsorted(cumulative, rank, side="right") - 1, 0, BINS - 1)
-    inside = (rank - cumulative[index]) / np.maximum(counts[index], 1)
+    occupied = np.flatnonzero(counts)
+    held = counts[occupied]
+    cumulative = np.concatenate([[0], np.cumsum(held)])
+    rank = q * (cumulative[-1] - 1) + 0.5
+    place = np.clip(np.searchsorted(cumulative, rank, side="right") - 1, 0, occupied.size - 1)
+    index = occupied[place]
+    inside = (rank - cumulative[place]) / held[place]
     edge = edges(base)
     value = edge[index] + np.clip(inside, 0.0, 1.0) * (edge[index + 1] - edge[index])
     value = np.where(index == 0, 0.0, value)

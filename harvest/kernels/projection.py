@@ -80,6 +80,15 @@ def add_up(values, lanes):
     return total
 
 
+@kernel(fastmath=SUMS)
+def add_up_squares(values, lanes):
+    """Sum of the squares of the first ``lanes`` values."""
+    total = 0.0
+    for j in range(lanes):
+        total += values[j] * values[j]
+    return total
+
+
 @kernel()
 def count_events(flags, lanes, per_draw, row, events, squares):
     """Add one yearly event: how many lanes, and the sum over draws of the squared share of the draw's futures."""
@@ -96,6 +105,9 @@ def count_events(flags, lanes, per_draw, row, events, squares):
 def add_values(values, lanes, per_draw, column, sums, squares):
     """Add one yearly quantity: its sum over lanes, and over draws the squared mean of the draw's futures."""
     sums[column] += add_up(values, lanes)
+    if per_draw == 1:
+        squares[column] += add_up_squares(values, lanes)
+        return
     total = 0.0
     for first in range(0, lanes, per_draw):
         mean = 0.0
@@ -105,14 +117,20 @@ def add_values(values, lanes, per_draw, column, sums, squares):
     squares[column] += total
 
 
-@kernel()
-def fill_histogram(values, lanes, base, counts, extremes):
-    """Count the lanes' values into a log histogram and widen its exact extremes."""
+@kernel(fastmath=SUMS)
+def widen(values, lanes, extremes):
+    """Widen the exact extremes of what a histogram has counted."""
     least, most = extremes[0], extremes[1]
     for j in range(lanes):
         least = min(least, values[j])
         most = max(most, values[j])
     extremes[0], extremes[1] = least, most
+
+
+@kernel()
+def fill_histogram(values, lanes, base, counts, extremes):
+    """Count the lanes' values into a log histogram and widen its exact extremes."""
+    widen(values, lanes, extremes)
     for j in range(lanes):
         counts[bin_of(values[j], base)] += 1
 
@@ -152,8 +170,11 @@ def fill_take(settings, block, year, quota, noise, take):
 
 
 @kernel()
-def fill_environment(settings, block, year, lanes, state, noise):
-    """The autocorrelated standard normal of the year's environment, in place: marginal variance one."""
+def fill_environment(settings, block, year, lanes, fresh, state, noise):
+    """The autocorrelated standard normal of the year's environment, in place: marginal variance one.
+
+    ``fresh`` is √(1 − ρ²), the weight of the year's own noise.
+    """
     fill_normals(settings.seed, block, year, ENVIRONMENT, noise)
     rho = lanes[RHO]
     if year == 0 and not settings.carried:
@@ -161,7 +182,7 @@ def fill_environment(settings, block, year, lanes, state, noise):
             state[j] = noise[j]
     else:
         for j in range(state.shape[0]):
-            state[j] = rho[j] * state[j] + np.sqrt(1.0 - rho[j] * rho[j]) * noise[j]
+            state[j] = rho[j] * state[j] + fresh[j] * noise[j]
 
 
 @kernel()
@@ -279,6 +300,7 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
     last = np.empty(width)
     estimate = np.empty(width)
     state = np.zeros(width)
+    fresh = np.empty(width)
     noise = np.empty(width)
     memory = np.empty((settings.lag + 1, width))
     for b in range(blocks.shape[0]):
@@ -290,6 +312,7 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
         last[:] = settings.last_quota
         start[:] = lanes[START]
         state[:] = lanes[WEATHER]
+        fresh[:] = np.sqrt(1.0 - lanes[RHO] * lanes[RHO])
         for back in range(settings.lag):
             memory[(back - settings.lag) % (settings.lag + 1)] = lanes[COLUMNS + back]
         for t in range(settings.years):
@@ -312,7 +335,7 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
             fill_take(settings, block, t, quota, noise, take)
             take_and_grow(settings, curve, lanes, take, start, removals, grown, growth, abundance, summary)
             if settings.environmental:
-                fill_environment(settings, block, t, lanes, state, noise)
+                fill_environment(settings, block, t, lanes, fresh, state, noise)
             apply_environment(settings, block, t, lanes, state, grown, noise, abundance)
             counted = abundance
             if settings.when == AFTER:

@@ -12,23 +12,34 @@ from harvest.plan.table import QuotaTable
 from harvest.rates import Rates
 from harvest.record.model import Record
 
-PRIVATE = "(private)"
 Pairs = list[tuple[str, str]]
 
 
-def without_private(record: Record) -> Record:
-    """The record with the texts of its private fields replaced, for everything that leaves the program."""
+def is_private(record: Record, path: str) -> bool:
+    """Whether the record hides a field: by its own path ("plan.author") or its table's ("plan")."""
+    return any(path == name or path.startswith(name + ".") for name in record.private)
 
-    def shown(name: str, text: str) -> str:
-        return PRIVATE if name in record.private else text
+
+def without_private(record: Record) -> Record:
+    """The record with its private names and texts replaced, for everything that leaves the program."""
+
+    def shown(path: str, text: str) -> str:
+        return words.PRIVATE if text and is_private(record, path) else text
 
     return replace(
         record,
         name=shown("name", record.name),
         species=shown("species", record.species),
         place=shown("place", record.place),
+        surveys=tuple(replace(s, name=shown("survey", s.name)) for s in record.surveys),
         plan=tuple((key, shown(f"plan.{key}", text)) for key, text in record.plan),
     )
+
+
+def public(table: QuotaTable) -> QuotaTable:
+    """The table as others may see it: private names and texts of its record replaced."""
+    survey = words.PRIVATE if is_private(table.record, "survey") else table.rates.count_survey
+    return replace(table, record=without_private(table.record), rates=replace(table.rates, count_survey=survey))
 
 
 def _lag_words(lag: int) -> str:
@@ -91,8 +102,8 @@ def _evidence(record: Record, rates: Rates) -> Pairs:
 
 
 def assumptions(table: QuotaTable) -> Pairs:
-    """What the quota rests on: (topic, what is assumed)."""
-    record = without_private(table.record)
+    """What the quota rests on: (topic, what is assumed). For others, of :func:`public` of the table."""
+    record = table.record
     rule = "none adopted: the same legal quota every year" if not table.rule.feedback else str(table.rule)
     return [
         ("Rule", rule),
@@ -104,12 +115,11 @@ def assumptions(table: QuotaTable) -> Pairs:
 
 
 def record_pairs(record: Record) -> Pairs:
-    """The record's names and texts, private ones hidden: (field, content)."""
-    shown = without_private(record)
-    pairs = [("Name", shown.name), ("Species", shown.species), ("Place", shown.place), ("Unit", shown.unit)]
+    """The record's names and texts: (field, content)."""
+    pairs = [("Name", record.name), ("Species", record.species), ("Place", record.place), ("Unit", record.unit)]
     if record.present_quota is not None:
         pairs.append(("Present quota", words.number(record.present_quota, record.unit)))
-    return [(k, v) for k, v in pairs if v] + [(k.replace("_", " ").capitalize(), v) for k, v in shown.plan]
+    return [(k, v) for k, v in pairs if v] + [(k.replace("_", " ").capitalize(), v) for k, v in record.plan]
 
 
 def provenance(table: QuotaTable, *, dated: bool = True) -> Pairs:

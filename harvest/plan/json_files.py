@@ -20,9 +20,10 @@ from harvest.futures.project import Future
 from harvest.futures.recommend import Recommendation
 from harvest.futures.risk import RiskCurve
 from harvest.futures.rules import Rule
-from harvest.plan.assumptions import assumptions, without_private
+from harvest.plan.assumptions import assumptions, is_private, public, without_private
 from harvest.plan.sentences import findings, headline
 from harvest.plan.table import QuotaTable
+from harvest.plan.words import PRIVATE
 from harvest.rates import Rates
 from harvest.rates.spread import Spread
 from harvest.record.model import Record
@@ -71,7 +72,7 @@ def _head(kind: str, record: Record, rates: Rates, version: str) -> dict[str, An
         "origin": rates.origin,
         "first_year": rates.first_year,
         "count_year": rates.count_year,
-        "count_survey": rates.count_survey,
+        "count_survey": PRIVATE if is_private(record, "survey") else rates.count_survey,
         "notes": rates.notes,
     }
 
@@ -139,6 +140,7 @@ def _curve(curve: RiskCurve) -> dict[str, Any]:
 
 def quota_json(table: QuotaTable) -> dict[str, Any]:
     """What ``harvest quota`` writes."""
+    table = public(table)
     p, se = table.rule_risk
     return {
         **_head("quota", table.record, table.rates, table.version),

@@ -5,13 +5,14 @@ from __future__ import annotations
 import numpy as np
 import pandas as pd
 
-from harvest.futures.engine import counts_ahead
+from harvest.futures.engine import stated_bias
 from harvest.futures.recommend import Recommendation, read_off
 from harvest.futures.risk import RiskCurve
 from harvest.futures.rules import Rule
-from harvest.kernels.codes import RECORDED
 from harvest.plan import words
 from harvest.rates import Rates
+from harvest.rates.approach import usable_counts
+from harvest.rates.approach import usable_counts
 from harvest.record.model import Record
 from harvest.yields.reference import sustainable_today
 
@@ -64,23 +65,22 @@ def quota_steps(record: Record, rates: Rates, advice: Recommendation, without_lo
     return pd.DataFrame(rows, columns=COLUMNS)
 
 
-def rule_steps(record: Record, rates: Rates, rule: Rule, bias: float, first_quota: float) -> pd.DataFrame:
+def rule_steps(record: Record, rates: Rates, rule: Rule, first_quota: float) -> pd.DataFrame:
     """Steps from the count on record to the first year's quota under a rule with feedback; columns as above.
 
     Parameters
     ----------
-    bias : float
-        What a count is divided by.
     first_quota : float
         Legal quota of the first year, rounded.
     """
-    available, estimates = counts_ahead(record, rates, bias, 1)
+    available, estimates = counts_ahead(record, rates, 1)
     how = "whole animals" if record.unit == "animals" else "three significant figures"
     counted = rates.first_year - record.lag
     rows: list[tuple[str, float, str, str]] = []
     if available[0] == RECORDED:
-        estimate = float(estimates[0])
-        rows.append((f"Count of {counted}", estimate * bias, "abundance", "as counted"))
+        estimate, count = float(estimates[0]), usable_counts(record)[counted].count
+        bias = count / estimate
+        rows.append((f"Count of {counted}", count, "abundance", "as counted"))
         if bias != 1.0:
             rows.append(("Corrected for survey bias", estimate, "abundance", f"divided by {bias:.3g}"))
         why = str(rule)

@@ -227,7 +227,7 @@ def make_quota_table(
         future=future,
         rows=_rows(future, rule, first if feedback else rule.settings[0], plan_years, record.unit),
         card=lookup_card(record, rates, rule, bias),
-        steps=rule_steps(record, rates, rule, bias, first)
+        steps=rule_steps(record, rates, rule, first)
         if feedback
         else quota_steps(record, rates, advice, without_losses),
         compared=_compared(record, curve, advice, horizon),

@@ -6,6 +6,9 @@ import math
 
 from harvest.record.model import Level, Record
 
+#: Stands for a name or text that the record keeps private.
+PRIVATE = "(private)"
+
 
 def number(value: float, unit: str = "animals") -> str:
     """A quantity: whole animals, or tonnes to three significant figures; "never" for infinity, "none" for NaN."""
@@ -62,10 +65,11 @@ def error(se: float) -> str:
 
 
 def kind(record: Record) -> str:
-    """What is counted: "red deer", "tonnes of whitefish", "animals"."""
+    """What is counted: "red deer", "tonnes of whitefish", "animals"; the unit alone where the species is private."""
+    species = "" if record.species == PRIVATE else record.species
     if record.unit == "tonnes":
-        return f"tonnes of {record.species}" if record.species else "tonnes"
-    return record.species or "animals"
+        return f"tonnes of {species}" if species else "tonnes"
+    return species or "animals"
 
 
 def moment(record: Record) -> str:

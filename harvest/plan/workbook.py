@@ -13,7 +13,7 @@ from openpyxl.worksheet.worksheet import Worksheet
 
 from harvest.errors import CAUTION
 from harvest.plan import words
-from harvest.plan.assumptions import Pairs, assumptions, provenance, record_pairs
+from harvest.plan.assumptions import Pairs, assumptions, is_private, provenance, public, record_pairs
 from harvest.plan.cells import is_risky
 from harvest.plan.layout import Part, Value, parts
 from harvest.plan.sentences import findings, headline
@@ -138,6 +138,7 @@ def _pairs_sheet(book: Workbook, name: str, pairs: Pairs) -> None:
 
 def quota_workbook(table: QuotaTable) -> bytes:
     """The workbook's bytes: quota table, lookup card, steps, other quotas, assumptions, record, provenance."""
+    table = public(table)
     book = Workbook()
     book.remove(book.active)
     book.properties.creator = "Harvest"
@@ -163,9 +164,11 @@ def quota_workbook(table: QuotaTable) -> bytes:
 def _history_sheet(book: Workbook, table: QuotaTable) -> None:
     """The record's yearly history, as entered."""
     record = table.record
+    hidden = is_private(record, "history.removals")
+    removals: tuple[Value, ...] = (words.PRIVATE,) * len(record.history.years) if hidden else record.history.removals
     headings, kinds = ["Year", "Reported removals"], ["year", "amount"]
-    columns: list[tuple[Value, ...]] = [tuple(map(float, record.history.years)), record.history.removals]
-    for survey in record.surveys:
+    columns: list[tuple[Value, ...]] = [tuple(map(float, record.history.years)), removals]
+    for survey in () if is_private(record, "survey") else record.surveys:
         headings += [survey.name, "CV"]
         kinds += ["amount" if survey.kind == "absolute" else "index", "share"]
         columns += [survey.values, survey.cvs]

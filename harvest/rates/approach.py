@@ -15,10 +15,9 @@ from scipy import special
 
 from harvest.errors import RatesError
 from harvest.kernels.growth import growth_array
-from harvest.population import BY_NAME
 from harvest.rates.distributions import DOMAINS, quantile
 from harvest.rates.streams import stream
-from harvest.rates.table import Rates
+from harvest.rates.table import Rates, curve_codes
 from harvest.record.model import Record, Survey
 
 
@@ -32,27 +31,34 @@ class UsableCount:
     cv: float
 
 
+def usable_counts(record: Record) -> dict[int, UsableCount]:
+    """Absolute counts above zero with a CV, by year; of several in one year, the one with the smallest CV."""
+    found: dict[int, UsableCount] = {}
+    for survey in record.surveys:
+        if survey.kind == "absolute":
+            for row, (value, cv) in enumerate(zip(survey.values, survey.cvs, strict=True)):
+                if value is not None and value > 0 and cv is not None:
+                    year = record.history.years[row]
+                    if year not in found or cv < found[year].cv:
+                        found[year] = UsableCount(survey, row, value, cv)
+    return found
+
+
 def latest_usable_count(record: Record) -> UsableCount:
-    """The latest absolute count above zero with a CV; of several in one year, the one with the smallest CV.
+    """The latest of :func:`usable_counts`.
 
     Raises
     ------
     RatesError
         If the record holds none.
     """
-    found = [
-        UsableCount(survey, row, value, cv)
-        for survey in record.surveys
-        if survey.kind == "absolute"
-        for row, (value, cv) in enumerate(zip(survey.values, survey.cvs, strict=True))
-        if value is not None and value > 0 and cv is not None
-    ]
+    found = usable_counts(record)
     if not found:
         raise RatesError(
             "the record holds no usable absolute count (a count above zero with a CV): this year's abundance "
             "cannot be told from an index or from nothing. Add one, or wait for the fit to the history"
         )
-    return min(found, key=lambda c: (-c.row, c.cv))
+    return found[max(found)]
 
 
 def animals_per_unit(record: Record) -> float:
@@ -73,14 +79,18 @@ def approach(record: Record, table: pd.DataFrame, seed: int, notes: tuple[str, .
     seen = usable.count / table["bias"].to_numpy() * np.exp(tau * z)
 
     walk = _Walk(record, table, seed)
-    count_year, after = record.history.years[usable.row], usable.survey.when == "after"
-    at_count: dict[int, np.ndarray] = {count_year: seen}
-    abundance = walk.grow(seen, count_year) if after else seen
-    for year in range(count_year + 1 if after else count_year, record.quota_year):
-        left, abundance = walk.year(abundance, year)
-        at_count[year + (0 if after else 1)] = left if after else abundance
-    table["abundance"] = abundance
+    count_year, seen_after = record.history.years[usable.row], usable.survey.when == "after"
+    after = record.season == "short" and record.count_when == "after"
+    at_count: dict[int, np.ndarray] = {count_year: seen} if seen_after == after else {}
+    abundance = walk.grow(seen, count_year) if seen_after else seen
+    for year in range(count_year + 1 if seen_after else count_year, record.quota_year):
+        start = abundance
+        left, abundance = walk.year(start, year)
+        at_count[year] = left if after else start
     last = record.quota_year - 1 if after else record.quota_year
+    if not after:
+        at_count[last] = abundance
+    table["abundance"] = abundance
     table["counted"] = at_count.get(last, seen)
     table["weather"] = walk.weather if walk.weather is not None else np.zeros(draws)
     nothing = np.full(draws, np.nan)
@@ -104,7 +114,7 @@ class _Walk:
 
     def __init__(self, record: Record, table: pd.DataFrame, seed: int):
         self.record, self.table, self.seed = record, table, seed
-        self.codes = table["curve"].map({n: c.code for n, c in BY_NAME.items()}).to_numpy(np.int64)
+        self.codes = curve_codes(table)
         self.rates = [table[name].to_numpy(float) for name in ("r", "K", "shape")]
         self.weather: np.ndarray | None = None
         self.per_unit = animals_per_unit(record)

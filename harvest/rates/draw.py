@@ -157,6 +157,7 @@ def draw_rates(record: Record, seed: int = 0, draws: int = DRAWS) -> Rates:
         if count > 0
     ]
     table = pd.concat(parts, ignore_index=True)
+    table["curve"] = pd.Categorical(table["curve"], categories=list(BY_NAME))
     for name in ("wounding", "unreported", "other"):
         u = special.ndtr(stream(seed, name).standard_normal(draws))
         table[name] = quantile(getattr(record.losses, name), u, DOMAINS[name])

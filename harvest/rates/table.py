@@ -8,6 +8,7 @@ import numpy as np
 import pandas as pd
 
 from harvest import __version__
+from harvest.errors import RatesError
 from harvest.population import BY_NAME, by_draw
 from harvest.record.model import Level
 
@@ -28,6 +29,22 @@ COLUMNS = {
     "counted": "latest abundance at the count's moment before that season's take, in the record's unit",
     "weather": "standard normal of the environment in the year before (0 where none is known)",
 }
+
+
+def curve_codes(table: pd.DataFrame) -> np.ndarray:
+    """Kernel code of each draw's growth curve, int64, shape (draws,).
+
+    Raises
+    ------
+    RatesError
+        On a curve that the program does not know.
+    """
+    names = pd.Categorical(table["curve"], categories=list(BY_NAME))
+    positions = np.asarray(names.codes)
+    if (positions < 0).any():
+        unknown = sorted({str(n) for n in table["curve"][positions < 0]})
+        raise RatesError(f"unknown growth curve {', '.join(unknown)}: choose among {', '.join(BY_NAME)}")
+    return np.array([c.code for c in BY_NAME.values()], dtype=np.int64)[positions]
 
 
 @dataclass(frozen=True)
@@ -79,8 +96,7 @@ class Rates:
     @property
     def codes(self) -> np.ndarray:
         """Kernel code of each draw's growth curve, int64, shape (draws,)."""
-        names = self.table["curve"]
-        return names.map({n: c.code for n, c in BY_NAME.items()}).to_numpy(np.int64)
+        return curve_codes(self.table)
 
     @property
     def factor(self) -> np.ndarray:

@@ -72,8 +72,8 @@ FIELDS: tuple[Field, ...] = (
     Field("", "season", "choice", "Whether the take falls in a short season or runs all year.", True,
           choices=SEASONS, example="short"),
     Field("", "count_when", "choice", "When the count happens: before or after a short season; at the "
-          "start of an all-year season's year, or as its mean.", True,
-          choices=("before", "after", "start", "mean of year"), example="before"),
+          "start of an all-year season's year.", True,
+          choices=("before", "after", "start"), example="before"),
     Field("", "lag", "whole number", "Years from the count to the quota that it serves.", True,
           within=Interval(0, 5), unit=_YEARS, example=0),
     Field("", "history", "file name", "File of the yearly history.", default=HISTORY_FILE,
@@ -224,12 +224,12 @@ FIELDS: tuple[Field, ...] = (
           example="Each spring, by the office."),
 
     Field("private", "fields", "list of names",
-          "Keys (or whole tables) that are left out when the record is shared.", True,
+          "Names, surveys and texts that are left out of what the program writes for others.", True,
           example=["plan.author"]),
 )
 # fmt: on
 
-#: Names that ``private.fields`` may list besides the keys and tables of the record.
+#: Columns of the history that ``private.fields`` may list.
 HISTORY_NAMES = ("history.note", "history.removals")
 #: Rates that a correlation may name.
 CORRELATED = (
@@ -254,6 +254,6 @@ def field_at(path: str) -> Field:
 
 
 def private_names() -> tuple[str, ...]:
-    """Everything that ``private.fields`` may name."""
-    sections = (s.name for s in SECTIONS if s.name)
-    return (*(f.path for f in FIELDS), *sections, *HISTORY_NAMES)
+    """Everything that ``private.fields`` may name: what can be hidden without hiding what the quota rests on."""
+    plan = (f.path for f in FIELDS if f.section == "plan")
+    return ("name", "species", "place", "survey", "life", "plan", *plan, *HISTORY_NAMES)

@@ -16,6 +16,8 @@ UNITS = ("animals", "tonnes")
 SEASONS = ("short", "all year")
 #: When a count happens: before or after a short season; at the start of an all-year season's year, or as its mean.
 COUNT_MOMENTS = {"short": ("before", "after"), "all year": ("start", "mean of year")}
+#: The moments at which a record tells abundance: its absolute counts happen then, its limits are judged then.
+RECORD_MOMENTS = {"short": ("before", "after"), "all year": ("start",)}
 NOISE_CONVENTIONS = ("mean one", "median one")
 CURVES = ("logistic", "theta-logistic", "fox", "gompertz", "allee")
 SURVEY_KINDS = ("absolute", "index")

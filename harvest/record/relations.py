@@ -5,7 +5,7 @@ from __future__ import annotations
 from itertools import combinations
 
 from harvest.record.fields import private_names
-from harvest.record.model import COUNT_MOMENTS, Level
+from harvest.record.model import COUNT_MOMENTS, RECORD_MOMENTS, Level
 from harvest.record.reporting import Report, nearest, show
 from harvest.record.schema import NOTE, REMOVALS, YEAR
 from harvest.record.tables import Values, get, place
@@ -15,9 +15,9 @@ def check_season(values: Values, report: Report) -> None:
     """The moment of the count fits the season, and the lag fits the moment."""
     top = values[""]
     season, when, lag = get(top, "season"), get(top, "count_when"), get(top, "lag")
-    if season is not None and when is not None and when not in COUNT_MOMENTS[season]:
-        _report_moment("count_when", season, when, report)
-    if when in ("after", "mean of year") and lag == 0:
+    if season is not None and when is not None and when not in RECORD_MOMENTS[season]:
+        _report_moment("count_when", season, when, RECORD_MOMENTS[season], report)
+    if when == "after" and lag == 0:
         report.error(
             "lag",
             "0",
@@ -26,9 +26,12 @@ def check_season(values: Values, report: Report) -> None:
         )
 
 
-def _report_moment(where: str, season: str, when: str, report: Report) -> None:
-    choices = " or ".join(f'"{m}"' for m in COUNT_MOMENTS[season])
-    report.error(where, show(when), f'with season "{season}" it must be {choices}', "Correct this or the season.")
+def _report_moment(where: str, season: str, when: str, moments: tuple[str, ...], report: Report) -> None:
+    choices = " or ".join(f'"{m}"' for m in moments)
+    cure = "Correct this or the season."
+    if when == "mean of year":
+        cure = 'Write "start" here, and when = "mean of year" in the index survey that it belongs to.'
+    report.error(where, show(when), f'with season "{season}" it must be {choices}', cure)
 
 
 def check_surveys(values: Values, report: Report) -> None:
@@ -84,13 +87,20 @@ def _check_moment(survey: Values, top: Values, prefix: str, report: Report) -> N
     where = place(prefix, "when")
     if when not in COUNT_MOMENTS[season]:
         if "when" in survey:
-            _report_moment(where, season, when, report)
+            _report_moment(where, season, when, COUNT_MOMENTS[season], report)
     elif when == "mean of year" and get(survey, "kind") == "absolute":
         report.error(
             where,
             show(when),
             "the mean of the year is for an index only",
             'Write kind = "index", or when = "start" for an absolute survey.',
+        )
+    elif get(survey, "kind") == "absolute" and when != get(top, "count_when"):
+        report.error(
+            where,
+            show(when),
+            f"an absolute count happens when the record says, count_when = {show(get(top, 'count_when'))}",
+            "Take out this line, or correct count_when.",
         )
 
 
@@ -156,7 +166,12 @@ def check_private(values: Values, report: Report) -> None:
         guess = nearest(name, known)
         if name not in known:
             cure = f"Was {guess} meant?" if guess else 'Write the keys with their table, such as "plan.author".'
-            report.error("private.fields", show(name), "only keys of the record can be private", cure)
+            report.error(
+                "private.fields",
+                show(name),
+                "only names, surveys, texts and columns of the history can be private",
+                cure,
+            )
         elif name in seen:
             report.error("private.fields", show(name), "each key is named once", "Take out one of the two.")
         seen.add(name)

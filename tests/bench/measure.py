@@ -76,7 +76,15 @@ def command_seconds():
     """The main command as a whole process: the very first run (kernels compiled) and a later one."""
     with tempfile.TemporaryDirectory() as place:
         environment = {**os.environ, "HARVEST_CACHE": place}
-        command = [sys.executable, "-m", "harvest", "quota", str(demo_folder("deer")), "--out", str(Path(place) / "out")]
+        command = [
+            sys.executable,
+            "-m",
+            "harvest",
+            "quota",
+            str(demo_folder("deer")),
+            "--out",
+            str(Path(place) / "out"),
+        ]
 
         def run():
             subprocess.run(command, env=environment, check=True, capture_output=True)

@@ -62,7 +62,9 @@ def quota_of(plan: Plan, x: np.ndarray) -> np.ndarray:
 def simulate(plan: Plan, d: dict[str, np.ndarray], recent: np.ndarray, rng: np.random.Generator) -> dict:
     """Paths, each of shape (years, futures): start, counted, removals, quota, legal, short, bounded."""
     n = d["K"].size
-    out = {key: np.zeros((plan.years, n)) for key in ("start", "counted", "removals", "quota", "legal", "short", "bounded")}
+    out = {
+        key: np.zeros((plan.years, n)) for key in ("start", "counted", "removals", "quota", "legal", "short", "bounded")
+    }
     tau, slip = (np.sqrt(np.log(1 + cv**2)) for cv in (plan.survey_cv, plan.implementation_cv))
     x, quota = d["abundance"].astype(float), np.full(n, plan.last_quota)
     eps = d.get("weather")

@@ -139,7 +139,9 @@ def both(case: Case, seed: int) -> tuple[Any, dict[str, np.ndarray], int]:
         counts={y: v * case.stated_bias for y, v in case.more.get("counts", {2010: 1000.0}).items()},
     )
     future = project(record, rates, rule_from(case.rule, case.settings), 10, seed=seed, futures_per_draw=case.per_draw)
-    table = {k: np.repeat(rates.table[k].to_numpy(object if k == "curve" else float), case.per_draw) for k in rates.table}
+    table = {
+        k: np.repeat(rates.table[k].to_numpy(object if k == "curve" else float), case.per_draw) for k in rates.table
+    }
     if not case.carried:
         table.pop("weather")
     plan = Plan(
@@ -199,7 +201,11 @@ def test_projection_agrees_with_independent_simulation(name):
     }.items():
         row = future.measures.set_index("measure").loc[measure]
         error = np.hypot(row["se"], mine.std(ddof=1) / np.sqrt(n)) + 1e-5
-        assert abs(row["value"] - mine.mean()) <= STRICT * error + 1e-9 * mine.mean(), (measure, row["value"], mine.mean())
+        assert abs(row["value"] - mine.mean()) <= STRICT * error + 1e-9 * mine.mean(), (
+            measure,
+            row["value"],
+            mine.mean(),
+        )
 
 
 def test_the_cases_reach_what_they_claim():
@@ -208,7 +214,11 @@ def test_the_cases_reach_what_they_claim():
     for case in CASES.values():
         _, paths, n = both(case, seed=3)
         k = np.broadcast_to(np.asarray(case.columns.get("K", 1000.0), float), n)
-        found = events(case, paths, k) | {"short": paths["short"], "bounded": paths["bounded"], "gone": paths["start"] == 0}
+        found = events(case, paths, k) | {
+            "short": paths["short"],
+            "bounded": paths["bounded"],
+            "gone": paths["start"] == 0,
+        }
         for event, flags in found.items():
             share = flags.mean()
             seen[event] = max(seen.get(event, 0.0), min(share, 1 - share))

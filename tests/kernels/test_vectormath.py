@@ -72,7 +72,9 @@ def test_log_at_its_edges():
 def test_sine_and_cosine_over_one_turn():
     rng = np.random.default_rng(3)
     eighths = np.arange(8) / 8
-    u = np.concatenate([rng.random(200_000), eighths, np.nextafter(eighths[1:], 0), np.nextafter(eighths, 1), [1 - 2.0**-52]])
+    u = np.concatenate(
+        [rng.random(200_000), eighths, np.nextafter(eighths[1:], 0), np.nextafter(eighths, 1), [1 - 2.0**-52]]
+    )
     sine, cosine = np.empty_like(u), np.empty_like(u)
     _turn(u, sine, cosine)
     assert np.abs(sine - np.sin(2 * np.pi * u)).max() < 1.2e-15

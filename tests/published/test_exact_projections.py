@@ -37,7 +37,9 @@ def gompertz_moments(b, log_start, log_k, sigma, rho, mean_one, years, weather=N
 def test_gompertz_map_without_harvest_is_an_exact_autoregression(noise, rho, weather, season):
     n, b, sigma, years = 40_000, 0.3, 0.35, 12
     carried = weather is not None
-    rates = make_rates("gompertz", n, r=np.nan, shape=b, sigma=sigma, rho=rho, abundance=300.0, weather=weather or 0.0, carried=carried)
+    rates = make_rates(
+        "gompertz", n, r=np.nan, shape=b, sigma=sigma, rho=rho, abundance=300.0, weather=weather or 0.0, carried=carried
+    )
     future = project(make_record(season, noise=noise), rates, fixed_quota(0), years, paths=n, seed=5)
     mean, var = gompertz_moments(b, np.log(300), np.log(1000), sigma, rho, noise == "mean one", years, weather)
     logs = np.log(future.paths[2])
@@ -82,7 +84,11 @@ MOMENTS = [("short", "before"), ("short", "after"), ("all year", "start")]
 def test_without_noise_the_projection_is_the_recursion(curve, season, when, lag, rule, settings):
     rng = np.random.default_rng(lag)
     n, years = 300, 14
-    shape = {"theta-logistic": rng.uniform(0.4, 3, n), "gompertz": rng.uniform(0.1, 0.6, n), "allee": rng.uniform(0.05, 0.3, n)}
+    shape = {
+        "theta-logistic": rng.uniform(0.4, 3, n),
+        "gompertz": rng.uniform(0.1, 0.6, n),
+        "allee": rng.uniform(0.05, 0.3, n),
+    }
     columns = {
         "r": rng.uniform(0.05, 1.2, n),
         "K": rng.uniform(400, 1500, n),
@@ -113,7 +119,9 @@ def test_demographic_noise_alone_has_variance_one_over_what_grows(season, when, 
     n, demo, take = 60_000, 1.5, 300.0
     unit = 1.0 if mass is None else 1000 / mass
     rates = make_rates("logistic", n, r=0.3, K=2000.0, abundance=900.0, sigma_demo=demo)
-    record = make_record(season, when, lag=0, unit="animals" if mass is None else "tonnes", life=LifeHistory(body_mass=mass))
+    record = make_record(
+        season, when, lag=0, unit="animals" if mass is None else "tonnes", life=LifeHistory(body_mass=mass)
+    )
     paths = project(record, rates, fixed_quota(take), 2, paths=n).paths
     grows = 600.0 if season == "short" else 900.0
     mean = 600 + 0.3 * 600 * 0.7 if season == "short" else 900 + 0.3 * 900 * (1 - 0.45) - take

@@ -39,7 +39,9 @@ def computed(quantity: str, given: dict) -> float:
 @pytest.mark.parametrize("value", POINTS, ids=lambda v: f"{v['quantity']}-{v['given']['curve']}-{v['expected']}")
 def test_reference_point(value):
     assert computed(value["quantity"], value["given"]) == pytest.approx(
-        value["expected"], rel=value["tolerance"], abs=value["tolerance"] * 1e-3 if value["expected"] else value["tolerance"]
+        value["expected"],
+        rel=value["tolerance"],
+        abs=value["tolerance"] * 1e-3 if value["expected"] else value["tolerance"],
     ), (value["citation"], value["where"])
 
 

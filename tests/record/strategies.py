@@ -12,6 +12,7 @@ from harvest.record.model import (
     COUNT_MOMENTS,
     CURVES,
     NOISE_CONVENTIONS,
+    RECORD_MOMENTS,
     RULES,
     SEASONS,
     SURVEY_KINDS,
@@ -89,7 +90,7 @@ def distributions(draw: st.DrawFn, field: Field) -> Distribution:
 def surveys(draw: st.DrawFn, season: str, count_when: str, years: int, pool: dict[str, list[float]]) -> Survey:
     """A survey of a season, with its CVs from one number or from a column of the pool."""
     kind = draw(st.sampled_from(SURVEY_KINDS))
-    moments = [m for m in COUNT_MOMENTS[season] if kind == "index" or m != "mean of year"]
+    moments = COUNT_MOMENTS[season] if kind == "index" else (count_when,)
     limit = draw(st.none() | amounts)
     count = amounts if limit is None else st.just(0.0) | amounts
     values = tuple(draw(st.lists(st.none() | count, min_size=years, max_size=years)))
@@ -206,7 +207,7 @@ def _quota_years(history: History, found: tuple[Survey, ...]) -> st.SearchStrate
 def records(draw: st.DrawFn) -> Record:
     """A valid record, with every optional part sometimes there."""
     season = draw(st.sampled_from(SEASONS))
-    count_when = draw(st.sampled_from(COUNT_MOMENTS[season]))
+    count_when = draw(st.sampled_from(RECORD_MOMENTS[season]))
     history = draw(_histories())
     years = len(history.years)
     pool = draw(st.dictionaries(columns, st.lists(cvs, min_size=years, max_size=years), min_size=1, max_size=2))

@@ -33,7 +33,7 @@ def test_the_text_to_edit_is_sound() -> None:
         ('name = "Test herd"', "name = 3", ["name: found 3", "quotes"]),
         ('unit = "animals"', 'unit = "animal"', ["unit:", 'Was "animals" meant?']),
         ('unit = "animals"', 'unit = "kilograms"', ["unit:", '"animals" or "tonnes"']),
-        ('season = "short"', 'season = "all year"', ["count_when:", '"start" or "mean of year"']),
+        ('season = "short"', 'season = "all year"', ["count_when:", 'it must be "start"']),
         ('count_when = "before"', 'count_when = "start"', ["count_when:", '"before" or "after"']),
         ('count_when = "before"', 'count_when = "after"', ["lag: found 0", "at least 1"]),
         ("lag = 0", "lag = 6", ["lag: found 6", "from 0 to 5"]),
@@ -220,10 +220,22 @@ def test_a_sound_change_passes(old: str, new: str) -> None:
 
 
 def test_mean_of_year_is_for_an_index_only() -> None:
-    toml = edited(edited(TOML, '"short"', '"all year"'), '"before"', '"mean of year"')
-    toml = edited(toml, "lag = 0", "lag = 1")
-    assert told(problems_of(toml), "error", "survey 1, when", "index only")
-    assert problems_of(edited(toml, 'kind = "absolute"', 'kind = "absolute"\nwhen = "start"'))[0].severity == "warning"
+    toml = edited(edited(TOML, '"short"', '"all year"'), '"before"', '"start"')
+    mean = edited(toml, 'kind = "absolute"', 'kind = "absolute"\nwhen = "mean of year"')
+    assert told(problems_of(mean), "error", "survey 1, when", "index only")
+    index = edited(mean, 'kind = "absolute"', 'kind = "index"')
+    assert not [p for p in problems_of(index) if p.severity == "error"]
+    record = edited(toml, 'count_when = "start"', 'count_when = "mean of year"')
+    assert told(problems_of(record), "error", "count_when", "mean of year")
+
+
+def test_an_absolute_count_happens_when_the_record_says() -> None:
+    toml = edited(edited(TOML, 'kind = "absolute"', 'kind = "absolute"\nwhen = "after"'), "lag = 0", "lag = 1")
+    assert told(problems_of(toml), "error", "survey 1, when", "count_when")
+
+
+def test_numbers_that_show_in_the_results_cannot_be_private() -> None:
+    assert told(problems_of(TOML + '[private]\nfields = ["present_quota"]\n'), "error", "private.fields")
 
 
 def test_demographic_noise_in_tonnes_needs_a_body_mass() -> None:
