@@ -97,7 +97,8 @@ def _limit_sentence(table: QuotaTable) -> str:
     later, later_se = advice.limit_risk
     told = (
         f"The chance of ever falling below {words.limit_words(record)} is {words.probability(soon)} in those "
-        f"{year} years, and {words.probability(later)} ({words.error(later_se)}) if the same quota goes on for {table.horizon}."
+        f"{year} years, and {words.probability(later)} ({words.error(later_se)}) if the same quota goes on "
+        f"for {table.horizon}."
     )
     if advice.criterion.question == "reduction" and later > record.objectives.tolerance:
         told += " Stop this cull as soon as the count is under the ceiling: it is not a quota to keep."

@@ -12,7 +12,6 @@ from harvest.futures.rules import Rule
 from harvest.plan import words
 from harvest.rates import Rates
 from harvest.rates.approach import usable_counts
-from harvest.rates.approach import usable_counts
 from harvest.record.model import Record
 from harvest.yields.reference import sustainable_today
 
@@ -73,16 +72,16 @@ def rule_steps(record: Record, rates: Rates, rule: Rule, first_quota: float) -> 
     first_quota : float
         Legal quota of the first year, rounded.
     """
-    available, estimates = counts_ahead(record, rates, 1)
     how = "whole animals" if record.unit == "animals" else "three significant figures"
     counted = rates.first_year - record.lag
     rows: list[tuple[str, float, str, str]] = []
-    if available[0] == RECORDED:
-        estimate, count = float(estimates[0]), usable_counts(record)[counted].count
-        bias = count / estimate
-        rows.append((f"Count of {counted}", count, "abundance", "as counted"))
+    usable = usable_counts(record).get(counted)
+    if usable is not None:
+        bias = stated_bias(usable.survey)
+        seen = f"{usable.survey.name}, coefficient of variation {words.percent(usable.cv)}"
+        rows.append((f"Count of {counted}", usable.count, "abundance", seen))
         if bias != 1.0:
-            rows.append(("Corrected for survey bias", estimate, "abundance", f"divided by {bias:.3g}"))
+            rows.append(("Corrected for survey bias", usable.count / bias, "abundance", f"divided by {bias:.3g}"))
         why = str(rule)
     else:
         last = float(record.present_quota or 0.0)

@@ -38,7 +38,7 @@ def full_record(**more):
 
 def test_every_column_follows_its_range():
     rates = draw_rates(full_record(), seed=0, draws=20_000)
-    assert list(rates.table) == list(COLUMNS)
+    assert set(rates.table) == set(COLUMNS)
     expected = {
         "r": stats.lognorm(np.log(4) / 2 / stats.norm.ppf(0.95), scale=0.2),
         "K": stats.lognorm(0.2, scale=1500),
