@@ -3,15 +3,20 @@
 from __future__ import annotations
 
 import textwrap
+from pathlib import Path
 
 import click
 
+from harvest.commands.options import JSON, write_json
+
 
 @click.command("keys")
-def command() -> None:
+@JSON
+def command(json_file: Path | None) -> None:
     """Explain every key of the JSON files that the other commands write with --json."""
-    from harvest.plan.json_keys import KEYS
+    from harvest.commands.json_keys import KEYS
 
     for key, meaning in KEYS.items():
         click.echo(f"{key}")
         click.echo(textwrap.indent(textwrap.fill(meaning, 96), "    "))
+    write_json(json_file, KEYS)

@@ -24,11 +24,16 @@ JSON = click.option(
 )
 
 
-def simulated(command: Callable[..., Any]) -> Callable[..., Any]:
-    """A command on a record's folder with seed, draws, threads and JSON."""
-    for option in (JSON, THREADS, DRAWS, SEED, FOLDER):
+def drawn(command: Callable[..., Any]) -> Callable[..., Any]:
+    """A command on a record's folder with seed, draws and JSON."""
+    for option in (JSON, DRAWS, SEED, FOLDER):
         command = option(command)
     return command
+
+
+def simulated(command: Callable[..., Any]) -> Callable[..., Any]:
+    """The same for a command that projects: with threads."""
+    return drawn(THREADS(command))
 
 
 def load(folder: Path) -> Record:

@@ -6,15 +6,13 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import load_with_rates, simulated, write_json
+from harvest.commands.options import drawn, load_with_rates, write_json
 
 
 @click.command("thresholds")
-@simulated
+@drawn
 @click.option("--quota", type=float, help="Legal quota a year to examine; default the present quota.")
-def command(
-    folder: Path, seed: int, draws: int, threads: int | None, json_file: Path | None, quota: float | None
-) -> None:
+def command(folder: Path, seed: int, draws: int, json_file: Path | None, quota: float | None) -> None:
     """What collapses the population of FOLDER: the fold, both equilibria, margins and times."""
     record, rates = load_with_rates(folder, seed, draws)
     from harvest.commands import show

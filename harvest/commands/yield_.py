@@ -6,12 +6,12 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import load_with_rates, simulated, write_json
+from harvest.commands.options import drawn, load_with_rates, write_json
 
 
 @click.command("yield")
-@simulated
-def command(folder: Path, seed: int, draws: int, threads: int | None, json_file: Path | None) -> None:
+@drawn
+def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None:
     """What the population of FOLDER can sustain: over draws, the median with 50% and 90% intervals."""
     record, rates = load_with_rates(folder, seed, draws)
     from harvest.commands import show
@@ -19,6 +19,7 @@ def command(folder: Path, seed: int, draws: int, threads: int | None, json_file:
     from harvest.plan import words
     from harvest.plan.json_files import yield_json
     from harvest.yields import summarise_yield
+    from harvest.yields.summary import standing_year
 
     summary = summarise_yield(record, rates)
     s, unit, what = summary.spreads, record.unit, words.kind(record)
@@ -26,7 +27,7 @@ def command(folder: Path, seed: int, draws: int, threads: int | None, json_file:
     moment = words.moment(record)
     table(
         [
-            row(f"Abundance {moment}, {rates.first_year}", s["abundance"], unit),
+            row(f"Abundance {moment}, {standing_year(record, rates)}", s["abundance"], unit),
             row("Carrying capacity", s["K"], unit),
             row("Greatest per-head growth, a year", s["greatest_growth"], "rate"),
             row("Greatest sustainable yield (MSY), total removals a year", s["msy"], unit),

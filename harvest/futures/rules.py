@@ -74,11 +74,11 @@ class Rule:
         if self.name == "fixed quota":
             return f"fixed quota of {given['quota']:,.6g} a year"
         if self.name == "fixed share":
-            return f"fixed share: {given['share']:.1%} of the count"
+            return f"fixed share: {100.0 * given['share']:.3g}% of the count"
         if self.name == "escapement":
             return f"escapement: everything counted above {given['escapement']:,.6g}"
         return (
-            f"ramp: nothing below {given['lower']:,.6g}, rising to {given['share']:.1%} of the count "
+            f"ramp: nothing below {given['lower']:,.6g}, rising to {100.0 * given['share']:.3g}% of the count "
             f"at {given['upper']:,.6g} and above"
         )
 

@@ -1,4 +1,4 @@
-"""The results of each command as JSON; every key is explained in ``json_keys.py``.
+"""The results of each command as JSON; every key is explained in ``harvest.commands.json_keys``.
 
 No dates, no machine names: the same record, settings and seed give the same bytes, whatever the threads.
 Numbers have ten significant digits; null is "there is none" (or "never", for years).

@@ -76,6 +76,8 @@ def _card_part(table: QuotaTable) -> Part:
         else:
             rows.append((low, None if math.isnan(high) else high, quota))
     next_count = f"The count that serves each year's quota, as counted ({words.moment(record)})."
+    if table.rule.feedback and table.count_bias != 1.0:
+        next_count += f" The rule divides it by {table.count_bias:.3g}, the survey's stated bias."
     return Part(
         "Lookup card",
         f"{next_count} Rule: {table.rule}. Quotas from each band's lower edge.",

@@ -51,6 +51,8 @@ class QuotaTable:
     compared : DataFrame
         Constant quotas side by side, zero and the present quota among them: ``quota``, ``what``,
         ``ever_below_limit``, ``ever_below_limit_se``, ``ever_collapsed``, ``meets`` (the criterion's probability).
+    count_bias : float
+        What the lookup card's counts are divided by.
     horizon, seed, version
     """
 
@@ -64,6 +66,7 @@ class QuotaTable:
     card: pd.DataFrame
     steps: pd.DataFrame
     compared: pd.DataFrame
+    count_bias: float
     horizon: int
     seed: int
     version: str = field(default=__version__)
@@ -216,7 +219,6 @@ def make_quota_table(
             progress=(lambda done, total: report("the plan's years", done, total)) if report else None,
         )
     first = round_down(float(future.by_year["quota_median"].iloc[0]), record.unit)
-    bias = prepared.bias
     feedback = rule.feedback
     return QuotaTable(
         record=record,
@@ -226,11 +228,12 @@ def make_quota_table(
         curve=curve,
         future=future,
         rows=_rows(future, rule, first if feedback else rule.settings[0], plan_years, record.unit),
-        card=lookup_card(record, rates, rule, bias),
+        card=lookup_card(record, rates, rule, prepared.bias),
         steps=rule_steps(record, rates, rule, first)
         if feedback
         else quota_steps(record, rates, advice, without_losses),
         compared=_compared(record, curve, advice, horizon),
+        count_bias=prepared.bias,
         horizon=horizon,
         seed=seed,
     )

@@ -57,6 +57,12 @@ class YieldSummary:
     version: str = field(default=__version__)
 
 
+def standing_year(record: Record, rates: Rates) -> int:
+    """The year of today's abundance at the count's moment: the latest before the first quota season's take."""
+    after = record.season == "short" and record.count_when == "after"
+    return rates.first_year - 1 if after else rates.first_year
+
+
 def present_take(record: Record) -> float | None:
     """The legal take in force: removals of the latest recorded year, else the present quota."""
     recorded = [h for h in record.history.removals if h is not None]

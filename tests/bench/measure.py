@@ -8,11 +8,14 @@ import subprocess
 import sys
 import tempfile
 import time
+import tracemalloc
 from dataclasses import replace
 from pathlib import Path
 
+import numpy as np
+
 from harvest.futures import Rule, pick_question, project, recommend_quota, trace_risk
-from harvest.futures.engine import prepare
+from harvest.futures.engine import prepare, run, workers
 from harvest.rates import draw_rates
 from harvest.record import demo_folder, read_record
 from harvest.record.model import CurveChoice
@@ -59,6 +62,48 @@ def projection_ratio(rounds=3):
     return {"harvest, two threads": seconds, **theirs, "ratio": min(theirs.values()) / seconds}
 
 
+def events_only_ratio(rounds=3):
+    """The same loop without quantiles by year on either side: risk of the rule alone."""
+    record = logistic_deer()
+    rates = draw_rates(record, 1, REPLICATES)
+    prepared = prepare(record, rates)
+    rule = Rule("ramp", RULE)
+    settings = (record, RULE, prepared.tau, prepared.implementation, YEARS)
+    with workers(2) as pool:
+
+        def ours():
+            run(prepared, rule, YEARS, pool, seed=1, histograms=False)
+
+        ours()
+        seconds = best_of(rounds, ours)
+        generators = [np.random.Generator(np.random.SFC64(s)) for s in np.random.SeedSequence(1).spawn(20)]
+
+        def chunks():
+            for i, rng in enumerate(generators):
+                whole_arrays.project(rates.table.iloc[i * 5000 : (i + 1) * 5000], *settings, rng)
+
+        theirs = min(
+            best_of(rounds, lambda: whole_arrays.project(rates.table, *settings, np.random.default_rng(1))),
+            best_of(rounds, chunks),
+        )
+    return {"harvest, two threads": seconds, "best plain numpy": theirs, "ratio": theirs / seconds}
+
+
+def memory_per_future():
+    """Bytes of peak memory that one more future costs, 10,000 draws with 10 and with 60 futures each."""
+    record = logistic_deer()
+    rates = draw_rates(record, 1, 10_000)
+    rule = Rule("ramp", RULE)
+    project(record, rates, rule, 5, threads=2)
+    peaks = []
+    for futures in (10, 60):
+        tracemalloc.start()
+        project(record, rates, rule, 20, futures_per_draw=futures, threads=2)
+        peaks.append(tracemalloc.get_traced_memory()[1])
+        tracemalloc.stop()
+    return (peaks[1] - peaks[0]) / 500_000
+
+
 def recommendation_seconds(rounds=5):
     """The recommended quota of a demo: 50 quotas × 10,000 futures × 20 years, warm."""
     record = read_record(demo_folder("deer"))
@@ -94,8 +139,10 @@ def command_seconds():
 
 if __name__ == "__main__":
     found = {
-        f"projection, {REPLICATES:,} × {YEARS}": projection_ratio(),
+        f"projection with quantiles by year, {REPLICATES:,} × {YEARS}, seconds": projection_ratio(),
+        f"projection, events only, {REPLICATES:,} × {YEARS}, seconds": events_only_ratio(),
+        "memory per future, bytes": memory_per_future(),
         "recommended quota, warm, seconds": recommendation_seconds(),
         "harvest quota, whole process, seconds": command_seconds(),
     }
-    print(json.dumps(found, indent=1))
+    print(json.dumps(found, indent=1, ensure_ascii=False))

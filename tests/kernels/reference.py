@@ -78,7 +78,7 @@ def environment(s, d: Draw, grows: float, eps: float, eta: float) -> float:
 
 
 def future(s, rule_settings, available, recorded, curve: int, d: Draw, recent: list[float], z: Callable) -> dict:
-    """One future. ``z(purpose, year)`` gives its standard normal; ``recent`` the abundance seen before, oldest first."""
+    """One future. ``z(purpose, year)`` is its standard normal; ``recent`` the abundance seen before, oldest first."""
     seen = {year - s.lag: x for year, x in enumerate(recent)}
     x, last, eps = d.start, s.last_quota, d.weather
     out: dict = {name: [] for name in ("start", "removals", "counted", "quota", "legal")}
@@ -102,10 +102,8 @@ def future(s, rule_settings, available, recorded, curve: int, d: Draw, recent: l
         removals, grows, after, short, bounded = one_year(s.season, curve, d, x, take)
         wanted = take * d.factor + d.other
         legal = take * removals / wanted if wanted > 0 else 0.0
-        if t == 0 and not s.carried:
-            eps = z(1, 0)
-        else:
-            eps = d.rho * eps + math.sqrt(1 - d.rho**2) * z(1, t)
+        first = t == 0 and not s.carried
+        eps = z(1, 0) if first else d.rho * eps + math.sqrt(1 - d.rho**2) * z(1, t)
         after *= environment(s, d, grows, eps, z(2, t))
         if d.sigma_demo > 0 and after * s.per_unit < 1:
             after = 0.0

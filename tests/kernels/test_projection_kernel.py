@@ -15,10 +15,27 @@ from . import reference
 
 YEARS = 9
 BASE = kernel.Settings(
-    seed=0, years=YEARS, futures_per_draw=1, season=0, when=0, lag=0, mean_one=1, demographic=1, environmental=1,
-    carried=0, rule=0, tau=0.0, implementation=0.0, bias=1.0, without_count=0.8, last_quota=33.0, per_unit=1.0,
-    histograms=1, base=base_of(1000.0), paths=0,
-)  # fmt: skip
+    seed=0,
+    years=YEARS,
+    futures_per_draw=1,
+    season=0,
+    when=0,
+    lag=0,
+    mean_one=1,
+    demographic=1,
+    environmental=1,
+    carried=0,
+    rule=0,
+    tau=0.0,
+    implementation=0.0,
+    bias=1.0,
+    without_count=0.8,
+    last_quota=33.0,
+    per_unit=1.0,
+    histograms=1,
+    base=base_of(1000.0),
+    paths=0,
+)
 SETTINGS = {0: [45.0], 1: [0.15], 2: [420.0], 3: [200.0, 700.0, 0.3]}
 
 
@@ -98,9 +115,19 @@ CASES = {
 def test_every_lane_equals_plain_python(name):
     curve, season, when, lag, rule = CASES[name]
     settings = BASE._replace(
-        season=season, when=when, lag=lag, rule=rule, seed=curve, mean_one=lag % 2, carried=int(rule > 1), paths=90,
-        tau=0.3 if curve != 1 else 0.0, implementation=0.2 if season == 0 else 0.0, bias=0.9, per_unit=[1.0, 12.0][rule % 2],
-    )  # fmt: skip
+        season=season,
+        when=when,
+        lag=lag,
+        rule=rule,
+        seed=curve,
+        mean_one=lag % 2,
+        carried=int(rule > 1),
+        paths=90,
+        tau=0.3 if curve != 1 else 0.0,
+        implementation=0.2 if season == 0 else 0.0,
+        bias=0.9,
+        per_unit=[1.0, 12.0][rule % 2],
+    )
     draws = make_draws(90, lag, seed=lag)
     blocks = [(4, curve, 0, 60), (7, curve, 60, 30)]
     available, recorded = [1, 0, 2, 2, 0, 0, 1, 2, 0], [500.0] + [0.0] * 5 + [640.0, 0.0, 0.0]
@@ -159,13 +186,12 @@ def test_switching_one_noise_on_leaves_the_others_as_they_were():
     demographic = run(BASE._replace(demographic=1, paths=50), blocks, draws)["paths"]
     np.testing.assert_allclose(demographic, plain, rtol=1e-6)
     share = BASE._replace(rule=1, demographic=0, paths=50)
-    slips = [run(share._replace(tau=tau, implementation=0.3), blocks, draws) for tau in (0.0, 0.4)]
-    ratio = [g["paths"][1, 0] / (g["paths"][3, 0] * draws[kernel.FACTOR] + draws[kernel.OTHER]) for g in slips]
-    assert not np.allclose(slips[0]["paths"][3], slips[1]["paths"][3])
-    legal = [(g["paths"][1, 0] - draws[kernel.OTHER]) / draws[kernel.FACTOR] / g["paths"][3, 0] for g in slips]
-    kept = (slips[0]["paths"][0, 0] > slips[0]["paths"][1, 0]) & (slips[1]["paths"][0, 0] > slips[1]["paths"][1, 0])
-    assert kept.sum() > 40, ratio
-    np.testing.assert_allclose(legal[0][kept], legal[1][kept], rtol=1e-10)
+    quiet, noisy = (run(share._replace(tau=tau, implementation=0.3), blocks, draws)["paths"] for tau in (0.0, 0.4))
+    assert not np.allclose(quiet[3], noisy[3])
+    kept = (quiet[0, 0] > quiet[1, 0]) & (noisy[0, 0] > noisy[1, 0])  # not cut short by what exists
+    assert kept.sum() > 30
+    slip = [((p[1, 0] - draws[kernel.OTHER]) / draws[kernel.FACTOR] / p[3, 0])[kept] for p in (quiet, noisy)]
+    np.testing.assert_allclose(*slip, rtol=1e-9)
 
 
 def test_blocks_do_not_depend_on_what_ran_before_them():

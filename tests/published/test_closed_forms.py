@@ -76,9 +76,11 @@ def test_greatest_yield_where_and_at_which_share(given, season):
     best = grid[np.argmax([held_at(given, season, x) for x in grid])]
     width = grid[1] - grid[0]
     found = minimize_scalar(
-        lambda x: -held_at(given, season, x), bounds=(max(low, best - width), best + width), method="bounded",
+        lambda x: -held_at(given, season, x),
+        bounds=(max(low, best - width), best + width),
+        method="bounded",
         options={"xatol": 1e-9 * k},
-    )  # fmt: skip
+    )
     msy, x = -found.fun, found.x
     values = reference_values(make_record(season), rates_of(given)).iloc[0]
     assert values["msy"] == pytest.approx(msy, rel=1e-9)

@@ -158,3 +158,24 @@ def test_legal_take_is_what_remains_of_all_removals():
     assert future.paths[1][0].tolist() == [100.0, 90.0]
     assert future.measure("mean yearly legal take") == pytest.approx((60 + 60 * 0.9) / 2)
     assert future.measure("share of years with less to take than the quota") == 0.5
+
+
+@pytest.mark.parametrize(("season", "best"), [("short", 500.0), ("all year", 500.0)])
+def test_no_rule_beats_the_greatest_yield_in_the_long_run_and_escapement_comes_closest(season, best):
+    """Reed 1979: independent mean-one noise, perfect counts; mean removals after eighty years."""
+    rates = make_rates("logistic", 20_000, r=0.6, abundance=600.0, sigma=0.35)
+    record, msy = make_record(season, cv=0.0), 0.6 * 1000 / 4
+    share = msy / (best + msy) if season == "short" else msy / best
+    yields = {}
+    for rule, settings in (
+        ("escapement", {"escapement": best}),
+        ("fixed share", {"share": share}),
+        ("ramp", {"lower": 200.0, "upper": 800.0, "share": 1.4 * share}),
+    ):
+        last = project(record, rates, rule_from(rule, settings), 80).by_year.iloc[-1]
+        yields[rule] = (last["removals_mean"], last["removals_mean_se"])
+        assert last["removals_mean"] < msy + STRICT * last["removals_mean_se"], rule
+    if season == "all year":
+        return  # taking X − E from a year whose growth already began at X is not Reed's rule; only the bound holds
+    for rule in ("fixed share", "ramp"):
+        assert yields["escapement"][0] > yields[rule][0] - STRICT * np.hypot(yields["escapement"][1], yields[rule][1])

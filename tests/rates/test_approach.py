@@ -180,9 +180,18 @@ def test_with_noise_abundance_agrees_with_independent_simulation(name):
     n, sigma = 30_000, 0.25
     ranges = {"process_noise": fixed(sigma), "autocorrelation": fixed(rho), "demographic_noise": fixed(demo)}
     record = history(
-        season, when, lag, losses=LOSSES, first_quota_year=2023, noise=noise, rates=ranges, unit=unit,
-        bias=spread("lognormal", median=0.9, sd_log=0.1), cv=0.3, life=LifeHistory(body_mass=200.0),
-    )  # fmt: skip
+        season,
+        when,
+        lag,
+        losses=LOSSES,
+        first_quota_year=2023,
+        noise=noise,
+        rates=ranges,
+        unit=unit,
+        bias=spread("lognormal", median=0.9, sd_log=0.1),
+        cv=0.3,
+        life=LifeHistory(body_mass=200.0),
+    )
     rates = draw_rates(record, seed=3, draws=n)
 
     rng = np.random.default_rng(99)

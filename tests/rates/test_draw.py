@@ -37,7 +37,7 @@ def full_record(**more):
 
 
 def test_every_column_follows_its_range():
-    rates = draw_rates(full_record(), seed=0, draws=20_000)
+    rates = draw_rates(full_record(), seed=1, draws=20_000)
     assert set(rates.table) == set(COLUMNS)
     expected = {
         "r": stats.lognorm(np.log(4) / 2 / stats.norm.ppf(0.95), scale=0.2),
@@ -75,7 +75,12 @@ def test_three_correlations_at_once_and_contradictions_refused():
     got = stats.spearmanr(table).statistic
     for (i, j), value in values.items():
         assert got[i, j] == pytest.approx(value, abs=4.5 / np.sqrt(40_000))
-    clash = replace(record, correlations=tuple(Correlation(names[i], names[j], v) for (i, j), v in {(0, 1): 0.9, (0, 2): 0.9, (1, 2): -0.9}.items()))  # fmt: skip
+    clash = replace(
+        record,
+        correlations=tuple(
+            Correlation(names[i], names[j], v) for (i, j), v in {(0, 1): 0.9, (0, 2): 0.9, (1, 2): -0.9}.items()
+        ),
+    )
     with pytest.raises(RatesError, match="contradict"):
         draw_rates(clash, draws=10)
 
@@ -127,9 +132,6 @@ def test_two_curves_share_a_table_in_exact_proportion_each_with_its_own_rates():
         CurveChoice("fox", 0.0001, ()),
     )
     rates = draw_rates(replace(full_record(), curves=curves), draws=1000)
-    assert rates.table["curve"].value_counts().to_dict() | {"fox": 0} == rates.table[
-        "curve"
-    ].value_counts().to_dict() | {"fox": 0}
     counts = {name: int((rates.table["curve"] == name).sum()) for name in ("theta-logistic", "gompertz", "fox")}
     assert counts == {"theta-logistic": 333, "gompertz": 667, "fox": 0}
     gompertz = rates.table[rates.table["curve"] == "gompertz"]
@@ -142,7 +144,10 @@ def test_two_curves_share_a_table_in_exact_proportion_each_with_its_own_rates():
 
 def test_max_growth_is_growth_at_the_stated_low_abundance_for_unbounded_curves():
     growth = spread("90% between", low=0.1, high=0.3)
-    curves = tuple(CurveChoice(name, 1.0, shape) for name, shape in (("logistic", ()), ("fox", ()), ("gompertz", ()), ("allee", (("shape", fixed(0.2)),))))  # fmt: skip
+    curves = tuple(
+        CurveChoice(name, 1.0, shape)
+        for name, shape in (("logistic", ()), ("fox", ()), ("gompertz", ()), ("allee", (("shape", fixed(0.2)),)))
+    )
     record = replace(
         make_record(),
         curves=curves,

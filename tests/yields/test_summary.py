@@ -18,9 +18,13 @@ MOMENTS = [("short", "before"), ("short", "after"), ("all year", "start")]
 def mixed(n=3000):
     rng = np.random.default_rng(1)
     return make_rates(
-        r=rng.lognormal(np.log(0.5), 0.5, n), K=rng.lognormal(np.log(1000), 0.3, n), abundance=rng.lognormal(np.log(600), 0.5, n),
-        wounding=0.1, unreported=0.05, other=3.0,
-    )  # fmt: skip
+        r=rng.lognormal(np.log(0.5), 0.5, n),
+        K=rng.lognormal(np.log(1000), 0.3, n),
+        abundance=rng.lognormal(np.log(600), 0.5, n),
+        wounding=0.1,
+        unreported=0.05,
+        other=3.0,
+    )
 
 
 @pytest.mark.parametrize(("season", "when"), MOMENTS)
@@ -105,7 +109,10 @@ def test_minimum_abundance_is_the_twentieth_percentile():
     assert minimum_abundance(500.0, 0.0) == 500.0
 
 
-@pytest.mark.parametrize(("n_min", "r_max", "factor"), [(100, 0.1, 0.05), (100, 0.1, 1.01), (-1, 0.1, 0.5), (100, -0.1, 0.5), (100, 0.1, float("nan"))])  # fmt: skip
+@pytest.mark.parametrize(
+    ("n_min", "r_max", "factor"),
+    [(100, 0.1, 0.05), (100, 0.1, 1.01), (-1, 0.1, 0.5), (100, -0.1, 0.5), (100, 0.1, float("nan"))],
+)
 def test_impossible_bounds_are_refused(n_min, r_max, factor):
     with pytest.raises(SettingsError):
         potential_biological_removal(n_min, r_max, factor)

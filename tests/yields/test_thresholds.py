@@ -8,7 +8,7 @@ import pytest
 from harvest.errors import SettingsError
 from harvest.record.model import Level, Objectives
 from harvest.yields import find_thresholds
-from harvest.yields.thresholds import MOST_YEARS, crossing_years
+from harvest.yields.thresholds import MOST_YEARS, counted_equilibria, crossing_years
 
 from ..builders import make_rates, make_record
 
@@ -19,9 +19,13 @@ N = 4000
 def logistic():
     rng = np.random.default_rng(8)
     return make_rates(
-        r=rng.lognormal(np.log(0.35), 0.3, N), K=rng.lognormal(np.log(1000), 0.2, N), abundance=rng.lognormal(np.log(350), 0.5, N),
-        wounding=rng.uniform(0, 0.3, N), unreported=rng.uniform(0, 0.1, N), other=rng.uniform(0, 10, N),
-    )  # fmt: skip
+        r=rng.lognormal(np.log(0.35), 0.3, N),
+        K=rng.lognormal(np.log(1000), 0.2, N),
+        abundance=rng.lognormal(np.log(350), 0.5, N),
+        wounding=rng.uniform(0, 0.3, N),
+        unreported=rng.uniform(0, 0.1, N),
+        other=rng.uniform(0, 10, N),
+    )
 
 
 def columns(rates, *names):
@@ -61,17 +65,21 @@ def test_chances_of_the_fold_and_of_the_lower_equilibrium(logistic, season, when
 
 def test_the_fold_tips_the_population_both_ways():
     """A step of the model from just above the lower equilibrium climbs, from just below it falls to nothing."""
-    rates = make_rates(["logistic", "theta-logistic", "fox", "gompertz", "allee"], r=[0.4, 0.4, 0.4, np.nan, 1.0], shape=[np.nan, 2, np.nan, 0.3, 0.1])
+    rates = make_rates(
+        ["logistic", "theta-logistic", "fox", "gompertz", "allee"],
+        r=[0.4, 0.4, 0.4, np.nan, 1.0],
+        shape=[np.nan, 2, np.nan, 0.3, 0.1],
+    )
     for season, when in (("short", "before"), ("all year", "start")):
         record = make_record(season, when)
         quota = 0.8 * float(rates.closed_form("msy").min())
         spread = find_thresholds(record, rates, quota)
         assert spread.beyond_fold == 0.0
-        from harvest.yields.thresholds import counted_equilibria
-
         lower, upper = counted_equilibria(record, rates, quota)
         for factor, end in ((1.02, True), (0.98, False)):
-            moved = make_rates(list(rates.table["curve"]), r=rates.table["r"], shape=rates.table["shape"], abundance=lower * factor)
+            moved = make_rates(
+                list(rates.table["curve"]), r=rates.table["r"], shape=rates.table["shape"], abundance=lower * factor
+            )
             to_upper = crossing_years(record, moved, quota, 0.95 * upper, falling=False)
             to_nothing = crossing_years(record, moved, quota, 0.3 * lower, falling=True)
             assert np.isfinite(to_upper if end else to_nothing).all()
@@ -100,19 +108,27 @@ def test_times_to_collapse_and_to_recover_by_explicit_loops(logistic, season, wh
 
     some = range(0, N, 10)
     collapse = [crossing(quota, i, lambda n: n < 120) for i in some]
-    closed = [0 if x0[i] < 0 else (0 if x0[i] >= 0.4 * k[i] else crossing(0, i, lambda n, i=i: n >= 0.4 * k[i])) for i in some]
+    closed = [0 if x0[i] >= 0.4 * k[i] else crossing(0, i, lambda n, i=i: n >= 0.4 * k[i]) for i in some]
     half = [0 if x0[i] >= 0.4 * k[i] else crossing(quota / 2, i, lambda n, i=i: n >= 0.4 * k[i]) for i in some]
     assert crossing_years(record, logistic, quota, np.full(N, 120.0), falling=True)[::10].tolist() == collapse
-    part = make_rates(**{c: logistic.table[c].to_numpy()[::10] for c in ("r", "K", "abundance", "wounding", "unreported", "other")})
+    part = make_rates(
+        **{c: logistic.table[c].to_numpy()[::10] for c in ("r", "K", "abundance", "wounding", "unreported", "other")}
+    )
     small = find_thresholds(record, part, quota).spreads
-    for name, times in (("years_to_collapse", collapse), ("years_to_recover_closed", closed), ("years_to_recover_half", half)):
+    for name, times in (
+        ("years_to_collapse", collapse),
+        ("years_to_recover_closed", closed),
+        ("years_to_recover_half", half),
+    ):
         times = np.sort(times)
         expected = [times[int(np.ceil(q * len(times))) - 1] for q in (0.05, 0.25, 0.5, 0.75, 0.95)]
         s = small[name]
         if np.isinf(times).any():
             assert [s.low90, s.low50, s.median, s.high50, s.high90] == expected, name
         else:
-            assert [s.low90, s.low50, s.median, s.high50, s.high90] == pytest.approx(np.quantile(times, [0.05, 0.25, 0.5, 0.75, 0.95]))
+            assert [s.low90, s.low50, s.median, s.high50, s.high90] == pytest.approx(
+                np.quantile(times, [0.05, 0.25, 0.5, 0.75, 0.95])
+            )
     assert np.isinf(collapse).any()
     assert got.spreads["years_to_collapse"].share == 1.0
 

@@ -1,0 +1,181 @@
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+import pytest
+
+from harvest.errors import SettingsError
+from harvest.futures import Rule, fixed_quota
+from harvest.futures.rounding import round_down
+from harvest.plan.sentences import findings, headline
+from harvest.record.model import ByYear, Level
+from tests.plan.conftest import table_of
+
+
+def test_the_demos_ask_the_three_kinds_of_question(tables):
+    asked = {name: t.recommendation.criterion.question for name, t in tables.items()}
+    assert asked == {"deer": "limit", "lake": "limit", "geese": "reduction"}
+    assert not tables["deer"].rule.feedback
+    assert tables["lake"].rule.feedback
+
+
+@pytest.mark.parametrize("demo", ["deer", "lake", "geese"])
+def test_zero_the_present_and_the_recommended_quota_are_always_shown(tables, demo):
+    table = tables[demo]
+    shown = table.compared.set_index("quota")["what"]
+    assert shown[0.0] == "no take"
+    assert "present quota" in shown[table.record.present_quota]
+    assert "recommended" in shown[table.recommendation.quota]
+    assert list(table.compared["quota"]) == sorted(set(table.compared["quota"]))
+    assert table.curve.quotas[0] == 0.0
+    assert table.record.present_quota in table.curve.quotas
+
+
+def test_the_recommended_quota_keeps_the_risk_within_tolerance_and_the_next_grid_quota_does_not(tables):
+    table = tables["deer"]
+    advice, curve = table.recommendation, table.curve
+    risk = curve.probability["ever_below_limit"][:, 19]
+    assert risk[curve.quotas <= advice.quota].max() <= 0.05
+    assert risk[curve.quotas > advice.exact].min() > 0.05
+    p, se = table.rule_risk
+    assert abs(p - advice.probability) < 4 * se + 0.002
+
+
+def test_the_smallest_cull_reaches_the_ceiling_in_time_and_a_smaller_one_does_not(tables):
+    table = tables["geese"]
+    advice, curve = table.recommendation, table.curve
+    chance = curve.probability["under_ceiling"][:, 4]
+    assert advice.quota == np.ceil(advice.exact - 1e-9)
+    assert chance[curve.quotas >= advice.quota].min() >= 0.8
+    assert chance[curve.quotas < advice.exact].max() < 0.8
+    assert headline(table).startswith("Take at least")
+
+
+def test_rows_are_the_projection_and_quotas_are_rounded(tables):
+    for name, table in tables.items():
+        years = table.future.by_year.head(len(table.rows))
+        assert len(table.rows) == table.record.objectives.plan_years
+        assert list(table.rows["quota_year"]) == list(
+            range(table.rates.first_year, table.rates.first_year + len(years))
+        )
+        for column, source in (("removals", "removals_mean"), ("abundance", "abundance_median")):
+            assert np.array_equal(table.rows[column], years[source])
+        for column in ("below_limit", "ever_below_limit", "ever_collapsed"):
+            assert np.array_equal(table.rows[column], years[column])
+        for quota in table.rows["quota"]:
+            assert quota == round_down(quota, table.record.unit), name
+
+
+def test_the_first_year_under_a_rule_is_the_rule_at_the_count_on_record(demos):
+    deer = demos["deer"]
+    rule = Rule("ramp", (1200.0, 2200.0, 0.15))
+    table = table_of(deer, rule=rule)
+    bias = table.count_bias
+    expected = round_down(float(rule.quota(2348.0 / bias)[0]), "animals")
+    first = table.rows.iloc[0]
+    assert first["quota"] == first["quota_low90"] == first["quota_high90"] == expected
+    assert table.rows.iloc[1]["quota_low90"] < table.rows.iloc[1]["quota_high90"]
+    assert table.steps["value"].iloc[-1] == expected
+    assert table.steps["value"].iloc[0] == 2348.0
+
+
+def test_without_a_count_the_first_quota_is_a_share_of_the_present_one(demos):
+    deer = demos["deer"]
+    survey = deer.surveys[0]
+    gap = replace(survey, values=(*survey.values[:-1], None), cvs=(*survey.cvs[:-1], None))
+    record = replace(deer, surveys=(gap,))
+    table = table_of(record, rule=Rule("fixed share", (0.1,), without_count=0.8))
+    assert table.rows["quota"].iloc[0] == 252.0 == 0.8 * record.present_quota
+    assert "no count of 2026" in table.steps["why"].iloc[0]
+    with pytest.raises(SettingsError, match="present_quota"):
+        table_of(replace(record, present_quota=None), rule=Rule("fixed share", (0.1,)))
+
+
+def test_steps_fall_from_the_yield_to_the_printed_quota(tables):
+    steps = tables["deer"].steps
+    assert list(steps["step"]) == [
+        "Greatest sustainable yield",
+        "Uncertain rates",
+        "Limit, abundance and bad years",
+        "Losses",
+        "Rounding",
+    ]
+    assert steps["value"].is_monotonic_decreasing
+    assert steps["value"].iloc[-1] == tables["deer"].recommendation.quota
+    msy = tables["deer"].rates.closed_form("msy")
+    assert steps["value"].iloc[0] == np.median(msy)
+    assert steps["value"].iloc[1] == np.quantile(msy, 0.05)
+
+
+def test_losses_explain_the_step_from_removals_to_legal_take(tables):
+    """With 11% losses and 15 other deaths the legal take is about (removals − 15) / 1.12."""
+    values = tables["deer"].steps["value"].to_numpy()
+    assert values[3] == pytest.approx((values[2] - 15.0) / 1.12, rel=0.02)
+
+
+def test_below_the_limit_the_question_is_recovery(demos):
+    record = replace(
+        demos["deer"],
+        objectives=replace(demos["deer"].objectives, limit=Level(3000.0), recovery=ByYear(8, 0.7), target=None),
+    )
+    table = table_of(record)
+    advice = table.recommendation
+    assert advice.criterion.question == "recovery"
+    assert advice.qualifies
+    chance = table.curve.probability["back_above_limit"][:, 7]
+    assert chance[table.curve.quotas <= advice.quota].min() >= 0.7
+    assert chance[table.curve.quotas > advice.exact].max() < 0.7
+    assert "being back above" in " ".join(findings(table))
+
+
+def test_nothing_within_tolerance_is_a_closure_with_its_miss(demos):
+    objectives = replace(demos["deer"].objectives, limit=Level(2200.0), target=None)
+    table = table_of(replace(demos["deer"], objectives=objectives))
+    advice = table.recommendation
+    assert not advice.qualifies
+    assert advice.quota == 0.0
+    assert advice.miss == pytest.approx(advice.zero[1] - 0.05)
+    assert headline(table).startswith("Close the season")
+    assert "misses" in " ".join(findings(table))
+
+
+def test_no_cull_reaches_an_impossible_ceiling(demos):
+    objectives = replace(demos["geese"].objectives, ceiling=Level(100.0), limit=Level(50.0), reduction=ByYear(1, 0.999))
+    table = table_of(replace(demos["geese"], objectives=objectives))
+    if table.recommendation.qualifies:
+        assert table.recommendation.probability >= 0.999
+    else:
+        assert "No cull examined" in headline(table)
+
+
+def test_the_tolerance_and_horizon_given_are_the_ones_used(demos):
+    strict = table_of(demos["deer"], tolerance=0.01)
+    loose = table_of(demos["deer"], tolerance=0.2)
+    short = table_of(demos["deer"], horizon=5)
+    assert strict.recommendation.quota < loose.recommendation.quota
+    assert short.recommendation.quota > strict.recommendation.quota
+    assert short.horizon == 5
+    assert "in 5 years" in " ".join(findings(short))
+
+
+def test_a_stated_quota_is_shown_with_its_own_risk(demos):
+    table = table_of(demos["deer"], rule=fixed_quota(320.0))
+    told = " ".join(findings(table))
+    assert "as asked" in headline(table)
+    assert "With 320 a year" in told
+    assert "above your tolerance" in told
+    assert (table.rows["quota"] == 320.0).all()
+
+
+@pytest.mark.parametrize("years", [0, 11])
+def test_plan_years_are_one_to_ten(demos, years):
+    with pytest.raises(SettingsError, match="plan years"):
+        table_of(demos["deer"], plan_years=years)
+
+
+def test_a_harmless_limit_extends_the_curve_until_the_risk_shows(demos):
+    objectives = replace(demos["deer"].objectives, limit=Level(1.0), target=None, horizon=1, recovery=None)
+    table = table_of(replace(demos["deer"], objectives=objectives))
+    assert not table.recommendation.at_edge
+    assert table.recommendation.quota > 1000
