@@ -14,21 +14,24 @@ from scipy import special, stats
 
 from harvest.record.model import Distribution
 
+Interval = tuple[float, float]
+POSITIVE: Interval = (0.0, math.inf)
+PROPORTION: Interval = (0.0, 1.0)
 #: Domains: open intervals in which a rate lives.
-DOMAINS: dict[str, tuple[float, float]] = {
-    "growth_rate": (0.0, math.inf),
-    "max_growth": (0.0, math.inf),
-    "carrying_capacity": (0.0, math.inf),
-    "process_noise": (0.0, math.inf),
-    "demographic_noise": (0.0, math.inf),
+DOMAINS: dict[str, Interval] = {
+    "growth_rate": POSITIVE,
+    "max_growth": POSITIVE,
+    "carrying_capacity": POSITIVE,
+    "process_noise": POSITIVE,
+    "demographic_noise": POSITIVE,
     "autocorrelation": (-1.0, 1.0),
-    "theta-logistic shape": (0.0, math.inf),
-    "gompertz shape": (0.0, 1.0),
-    "allee shape": (0.0, 1.0),
-    "bias": (0.0, math.inf),
-    "wounding": (0.0, math.inf),
-    "unreported": (0.0, math.inf),
-    "other": (0.0, math.inf),
+    "theta-logistic shape": POSITIVE,
+    "gompertz shape": PROPORTION,
+    "allee shape": PROPORTION,
+    "bias": POSITIVE,
+    "wounding": POSITIVE,
+    "unreported": POSITIVE,
+    "other": POSITIVE,
 }
 _Z95 = float(stats.norm.ppf(0.95))
 
@@ -46,33 +49,34 @@ def _frozen(d: Distribution) -> stats.distributions.rv_frozen:
     return stats.beta(d["a"], d["b"])
 
 
-def _between(d: Distribution, u: np.ndarray, domain: tuple[float, float]) -> np.ndarray:
-    """Nine tenths between low and high: lognormal, logit-normal or normal, by the domain."""
+def resolved(d: Distribution, domain: Interval) -> Distribution:
+    """The distribution that "90% between" stands for: lognormal for positive rates, normal for rates of either sign.
+
+    Proportions stay as they are: their logit-normal has no name of its own.
+    """
+    if d.kind != "90% between" or domain == PROPORTION:
+        return d
     low, high = d["low"], d["high"]
-    z = special.ndtri(u) / _Z95
-    if domain == (0.0, math.inf):
-        middle, half = 0.5 * math.log(low * high), 0.5 * math.log(high / low)
-        return np.exp(middle + half * z)
-    if domain == (0.0, 1.0):
-        a, b = special.logit(low), special.logit(high)
-        return special.expit(0.5 * (a + b) + 0.5 * (b - a) * z)
-    return 0.5 * (low + high) + 0.5 * (high - low) * z
+    if domain == POSITIVE:
+        spread = 0.5 * math.log(high / low) / _Z95
+        return Distribution("lognormal", (("median", math.sqrt(low * high)), ("sd_log", spread)))
+    return Distribution("normal", (("mean", 0.5 * (low + high)), ("sd", 0.5 * (high - low) / _Z95)))
 
 
-def outside(d: Distribution, domain: tuple[float, float]) -> float:
-    """Probability that the untruncated distribution puts outside the domain."""
-    if d.kind == "fixed" or (d.kind == "90% between" and domain != (-1.0, 1.0)):
+def outside(d: Distribution, domain: Interval, within: Interval | None = None) -> float:
+    """Probability that the untruncated distribution puts outside ``within`` (default: the domain)."""
+    d, (low, high) = resolved(d, domain), within or domain
+    if d.kind == "fixed":
+        inside = low < d["value"] < high or (d["value"] == low == 0.0)
+        return 0.0 if inside else 1.0
+    if d.kind == "90% between":
         return 0.0
-    frozen = (
-        stats.norm(0.5 * (d["low"] + d["high"]), 0.5 * (d["high"] - d["low"]) / _Z95)
-        if d.kind == "90% between"
-        else _frozen(d)
-    )
-    return float(frozen.cdf(domain[0]) + frozen.sf(domain[1]))
+    frozen = _frozen(d)
+    return float(frozen.cdf(low) + frozen.sf(high))
 
 
-def quantile(d: Distribution, u: np.ndarray, domain: tuple[float, float]) -> np.ndarray:
-    """The distribution's value at probability ``u``, held within ``domain``.
+def quantile(d: Distribution, u: np.ndarray, domain: Interval, within: Interval | None = None) -> np.ndarray:
+    """The distribution's value at probability ``u``, held within its domain.
 
     Parameters
     ----------
@@ -82,15 +86,15 @@ def quantile(d: Distribution, u: np.ndarray, domain: tuple[float, float]) -> np.
     domain : (float, float)
         One of :data:`DOMAINS`. It also decides what "90% between" means: lognormal for positive rates,
         logit-normal for proportions, else normal.
+    within : (float, float)
+        A narrower interval to hold the value in, not for "90% between" of a proportion.
     """
+    d = resolved(d, domain)
     if d.kind == "fixed":
         return np.full(u.shape, d["value"])
     if d.kind == "90% between":
-        if domain == (-1.0, 1.0):
-            mean, sd = 0.5 * (d["low"] + d["high"]), 0.5 * (d["high"] - d["low"]) / _Z95
-            d = Distribution("normal", (("mean", mean), ("sd", sd)))
-        else:
-            return _between(d, u, domain)
-    frozen = _frozen(d)
-    low, high = float(frozen.cdf(domain[0])), float(frozen.cdf(domain[1]))
-    return np.asarray(frozen.ppf(low + u * (high - low)))
+        a, b = special.logit(d["low"]), special.logit(d["high"])
+        return np.asarray(special.expit(0.5 * (a + b) + 0.5 * (b - a) * special.ndtri(u) / _Z95))
+    frozen, (low, high) = _frozen(d), within or domain
+    least, most = float(frozen.cdf(low)), float(frozen.cdf(high))
+    return np.asarray(frozen.ppf(least + u * (most - least)))

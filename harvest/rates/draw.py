@@ -15,7 +15,7 @@ from scipy import special
 from harvest.errors import RatesError, SettingsError
 from harvest.population import BY_NAME
 from harvest.rates.approach import approach
-from harvest.rates.distributions import DOMAINS, outside, quantile
+from harvest.rates.distributions import DOMAINS, Interval, outside, quantile
 from harvest.rates.streams import stream
 from harvest.rates.table import Rates
 from harvest.record.model import CurveChoice, Distribution, Record
@@ -69,8 +69,15 @@ def correlated_normals(record: Record, seed: int, draws: int) -> dict[str, np.nd
     return dict(zip(CORRELATED, z, strict=True))
 
 
-def _domain(name: str, curve: str) -> tuple[float, float]:
+def _domain(name: str, curve: str) -> Interval:
     return DOMAINS[f"{curve} shape" if name == "shape" else name]
+
+
+def _possible(name: str, curve: str, low_abundance: float) -> Interval:
+    """Where a rate may lie under a curve: its domain; growth at low abundance that keeps the Gompertz b below 1."""
+    if name == "max_growth" and curve == "gompertz":
+        return (0.0, 1.0 / low_abundance - 1.0)
+    return _domain(name, curve)
 
 
 def _draw_curve(
@@ -85,15 +92,16 @@ def _draw_curve(
 
     def value(name: str) -> np.ndarray:
         d, domain = stated[name], _domain(name, choice.name)
-        cut = outside(d, domain)
+        low, high = within = _possible(name, choice.name, record.low_abundance)
+        cut = outside(d, domain, within)
         if cut > 0.2:
             raise RatesError(
-                f"the range of {name} ({d}) has {cut:.0%} of its probability outside what is possible "
-                f"({domain[0]:g} to {domain[1]:g}): state a range that lies inside"
+                f"the range of {name} ({d}) has {cut:.0%} of its probability outside what the {choice.name} curve "
+                f"allows ({low:g} to {high:g}): state a range that lies inside"
             )
         if cut > 0.001:
-            notes.append(f"{name} ({d}): the {cut:.1%} outside {domain[0]:g} to {domain[1]:g} is cut off")
-        return quantile(d, special.ndtr(z[name][rows]), domain)
+            notes.append(f"{name} ({d}): the {cut:.1%} outside {low:g} to {high:g} is cut off")
+        return quantile(d, special.ndtr(z[name][rows]), domain, within)
 
     n = z["shape"][rows].size
     curve = BY_NAME[choice.name]

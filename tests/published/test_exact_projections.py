@@ -94,6 +94,7 @@ def test_without_noise_the_projection_is_the_recursion(curve, season, when, lag,
         "K": rng.uniform(400, 1500, n),
         "shape": shape.get(curve, np.nan),
         "abundance": rng.uniform(10, 2500, n),
+        "counted": rng.uniform(10, 2500, n),  # shown, never projected from
         "bias": rng.uniform(0.6, 1.4, n),
         "wounding": rng.uniform(0, 0.4, n),
         "unreported": rng.uniform(0, 0.2, n),

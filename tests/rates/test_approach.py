@@ -231,3 +231,13 @@ def test_no_years_between_count_and_quota_carry_no_weather():
     assert not rates.carried
     assert (rates.column("weather") == 0).all()
     assert (rates.first_year, rates.recent.shape) == (2020, (0, 20))
+
+
+def test_a_count_after_the_last_season_is_todays_abundance_and_what_a_rule_sees_next():
+    record = make_record("short", "after", counts={2020: 900.0}, years=(2018, 2019, 2020), lag=2)
+    record = replace(record, first_quota_year=2021)
+    rates = draw_rates(record, draws=30)
+    seen = rates.column("counted")
+    np.testing.assert_array_equal(rates.recent[1], seen)
+    assert np.isnan(rates.recent[0]).all(), "2019 is on record or was not counted"
+    np.testing.assert_allclose(rates.column("abundance"), seen + g(seen), rtol=1e-12)
