@@ -55,7 +55,10 @@ def load_with_rates(folder: Path, seed: int, draws: int) -> tuple[Record, Rates]
     tell_compiling()
     from harvest.rates import draw_rates
 
-    return record, draw_rates(record, seed, draws)
+    rates = draw_rates(record, seed, draws)
+    for note in rates.notes:
+        click.echo(f"note: {note}", err=True)
+    return record, rates
 
 
 def tell_compiling() -> None:

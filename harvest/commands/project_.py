@@ -74,7 +74,7 @@ def command(
         left=(),
     )  # fmt: skip
     click.echo(f"In {words.kind(record)}; abundance {words.moment(record)}. Limit: {words.limit_words(record)}.")
-    show.title("Over all years")
+    show.title(f"Over the {len(table)} years under this rule")
     show.grid(
         ("Measure", "value", "± Monte Carlo"),
         [[str(m).capitalize(), f"{v:,.4g}", f"{e:.2g}"] for m, v, e in future.measures.itertuples(index=False)],

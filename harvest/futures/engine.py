@@ -24,7 +24,7 @@ from harvest.kernels import projection as kernel
 from harvest.kernels.codes import MISSING, RECORDED, SEASON_CODES, SIMULATED, WHEN_CODES
 from harvest.kernels.histogram import BINS, base_of
 from harvest.rates import Rates
-from harvest.rates.approach import animals_per_unit, latest_usable_count, usable_counts
+from harvest.rates.approach import absolute_counts, animals_per_unit, latest_usable_count
 from harvest.rates.distributions import DOMAINS, quantile
 from harvest.rates.draw import check_seed_and_draws
 from harvest.record.model import Record, Survey
@@ -168,13 +168,13 @@ def counts_ahead(record: Record, rates: Rates, years: int) -> tuple[np.ndarray, 
     A count of year c serves the quota of year c + lag, divided by its own survey's bias. Counts of years within
     the history are as recorded; from then on one is made every ``survey_plan.every`` years after the latest.
     """
-    on_record = usable_counts(record)
+    on_record = absolute_counts(record)
     kind, estimate = np.full(years, SIMULATED, np.int64), np.zeros(years)
     for t in range(years):
         counted = rates.first_year + t - record.lag
         if counted in on_record:
-            usable = on_record[counted]
-            kind[t], estimate[t] = RECORDED, usable.count / stated_bias(usable.survey)
+            seen = on_record[counted]
+            kind[t], estimate[t] = RECORDED, seen.count / stated_bias(seen.survey)
         elif counted <= record.history.years[-1] or (counted - rates.count_year) % record.survey_plan.every:
             kind[t] = MISSING
     return kind, estimate

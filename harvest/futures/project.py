@@ -67,9 +67,15 @@ class Future:
 
 
 def event_error(p: np.ndarray, squares: np.ndarray, draws: int, per_draw: int) -> np.ndarray:
-    """Standard error of a probability, clustered by draw: sd of the draws' shares over √draws."""
+    """Standard error of a probability, clustered by draw: sd of the draws' shares over √draws.
+
+    Where no future or every future shows the event, that estimate is zero and says too much: the error is then
+    that of one event more among ``draws`` + 2 (Agresti & Coull 1998, doi:10.1080/00031305.1998.10480550).
+    """
     mean_square = p if per_draw == 1 else squares / draws
-    return np.sqrt(np.maximum(mean_square - p * p, 0.0) / max(draws - 1, 1))
+    error = np.sqrt(np.maximum(mean_square - p * p, 0.0) / max(draws - 1, 1))
+    rare = 1.0 / (draws + 2)
+    return np.where(error > 0.0, error, np.sqrt(rare * (1.0 - rare) / draws))
 
 
 def clustered(values: np.ndarray, per_draw: int) -> tuple[float, float]:

@@ -11,7 +11,7 @@ from harvest.futures.risk import RiskCurve
 from harvest.futures.rules import Rule
 from harvest.plan import words
 from harvest.rates import Rates
-from harvest.rates.approach import usable_counts
+from harvest.rates.approach import absolute_counts
 from harvest.record.model import Record
 from harvest.yields.reference import sustainable_today
 
@@ -75,13 +75,13 @@ def rule_steps(record: Record, rates: Rates, rule: Rule, first_quota: float) -> 
     how = "whole animals" if record.unit == "animals" else "three significant figures"
     counted = rates.first_year - record.lag
     rows: list[tuple[str, float, str, str]] = []
-    usable = usable_counts(record).get(counted)
-    if usable is not None:
-        bias = stated_bias(usable.survey)
-        seen = f"{usable.survey.name}, coefficient of variation {words.percent(usable.cv)}"
-        rows.append((f"Count of {counted}", usable.count, "abundance", seen))
+    found = absolute_counts(record).get(counted)
+    if found is not None:
+        bias = stated_bias(found.survey)
+        seen = f"{found.survey.name}, coefficient of variation {words.percent(found.cv)}"
+        rows.append((f"Count of {counted}", found.count, "abundance", seen))
         if bias != 1.0:
-            rows.append(("Corrected for survey bias", usable.count / bias, "abundance", f"divided by {bias:.3g}"))
+            rows.append(("Corrected for survey bias", found.count / bias, "abundance", f"divided by {bias:.3g}"))
         why = str(rule)
     else:
         last = float(record.present_quota or 0.0)

@@ -22,8 +22,8 @@ from harvest.record.model import Record, Survey
 
 
 @dataclass(frozen=True)
-class UsableCount:
-    """The latest usable absolute count: survey, its place in the history, the count and its CV."""
+class AbsoluteCount:
+    """An absolute count with its survey, its place in the history and its CV; zero is "below the detection limit"."""
 
     survey: Survey
     row: int
@@ -31,34 +31,46 @@ class UsableCount:
     cv: float
 
 
-def usable_counts(record: Record) -> dict[int, UsableCount]:
-    """Absolute counts above zero with a CV, by year; of several in one year, the one with the smallest CV."""
-    found: dict[int, UsableCount] = {}
+def absolute_counts(record: Record) -> dict[int, AbsoluteCount]:
+    """Absolute counts with a CV, by year: of several in one year one above zero, then the one with the smallest CV."""
+    found: dict[int, AbsoluteCount] = {}
     for survey in record.surveys:
         if survey.kind == "absolute":
             for row, (value, cv) in enumerate(zip(survey.values, survey.cvs, strict=True)):
-                if value is not None and value > 0 and cv is not None:
-                    year = record.history.years[row]
-                    if year not in found or cv < found[year].cv:
-                        found[year] = UsableCount(survey, row, value, cv)
+                if value is not None and cv is not None:
+                    mine, year = AbsoluteCount(survey, row, value, cv), record.history.years[row]
+                    rival = found.get(year)
+                    if rival is None or (mine.count <= 0.0, cv) < (rival.count <= 0.0, rival.cv):
+                        found[year] = mine
     return found
 
 
-def latest_usable_count(record: Record) -> UsableCount:
-    """The latest of :func:`usable_counts`.
+def latest_usable_count(record: Record) -> AbsoluteCount:
+    """The latest of :func:`absolute_counts` above zero.
 
     Raises
     ------
     RatesError
         If the record holds none.
     """
-    found = usable_counts(record)
-    if not found:
+    usable = {year: count for year, count in absolute_counts(record).items() if count.count > 0.0}
+    if not usable:
         raise RatesError(
             "the record holds no usable absolute count (a count above zero with a CV): this year's abundance "
             "cannot be told from an index or from nothing. Add one, or wait for the fit to the history"
         )
-    return found[max(found)]
+    return usable[max(usable)]
+
+
+def zero_counts_since(record: Record, usable: AbsoluteCount) -> tuple[str, ...]:
+    """A note for each absolute count of zero that is later than the count that is used."""
+    used = record.history.years[usable.row]
+    return tuple(
+        f"the {c.survey.name} of {year} found none (fewer than {c.survey.detection_limit or 1:g}), and cannot be used: "
+        f"abundance here rests on the count of {used} and may be far too high"
+        for year, c in sorted(absolute_counts(record).items())
+        if year > used and c.count <= 0.0
+    )
 
 
 def animals_per_unit(record: Record) -> float:
@@ -104,7 +116,7 @@ def approach(record: Record, table: pd.DataFrame, seed: int, notes: tuple[str, .
         count_year=count_year,
         count_survey=usable.survey.name,
         carried=walk.weather is not None,
-        notes=notes,
+        notes=(*notes, *zero_counts_since(record, usable)),
         record_digest=record.digest(),
     )
 

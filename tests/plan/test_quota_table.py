@@ -179,3 +179,15 @@ def test_a_harmless_limit_extends_the_curve_until_the_risk_shows(demos):
     table = table_of(replace(demos["deer"], objectives=objectives))
     assert not table.recommendation.at_edge
     assert table.recommendation.quota > 1000
+
+
+def test_a_count_of_zero_closes_the_season_under_a_rule_and_is_told(demos):
+    deer = demos["deer"]
+    survey = deer.surveys[0]
+    record = replace(deer, surveys=(replace(survey, values=(*survey.values[:-1], 0.0)),))
+    table = table_of(record, rule=Rule("ramp", (1200.0, 2200.0, 0.15)))
+    assert table.first_quota == 0.0
+    assert table.rates.count_year == 2025
+    (note,) = table.rates.notes
+    assert "2026 found none (fewer than 20)" in note
+    assert "far too high" in note
