@@ -30,7 +30,7 @@ from harvest.rates.draw import check_seed_and_draws
 from harvest.record.model import Record, Survey
 
 #: Blocks that one task runs: fixed, so that sums do not depend on threads.
-CHUNK = 32
+CHUNK = 8
 MOST_YEARS = 500
 MOST_FUTURES = 20_000_000
 Progress = Callable[[int, int], None]

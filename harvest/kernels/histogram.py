@@ -30,6 +30,11 @@ def bin_of(value, base):
     return min(max(index, 0), BINS - 1)
 
 
+def _bin(value: float, base: int) -> int:
+    """The bin of one value ≥ 0, before it is held within the histogram."""
+    return (int(np.float64(value).view(np.int64)) >> 44) - base
+
+
 @cache
 def edges(base: int) -> np.ndarray:
     """Lower edges of all bins and the upper edge of the last, shape (BINS + 1,); the first two are 0 and tiny."""
@@ -51,7 +56,9 @@ def quantiles(counts: np.ndarray, base: int, least: float, most: float, q: np.nd
     q : ndarray
         Probabilities.
     """
-    occupied = np.flatnonzero(counts)
+    first = min(max(_bin(least, base), 0), BINS - 1)
+    last = min(max(_bin(most, base), 0), BINS - 1)
+    occupied = np.flatnonzero(counts[first : last + 1]) + first
     held = counts[occupied]
     cumulative = np.concatenate([[0], np.cumsum(held)])
     rank = q * (cumulative[-1] - 1) + 0.5

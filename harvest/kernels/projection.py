@@ -128,11 +128,13 @@ def widen(values, lanes, extremes):
 
 
 @kernel()
-def fill_histogram(values, lanes, base, counts, extremes):
-    """Count the lanes' values into a log histogram and widen its exact extremes."""
+def fill_histogram(values, lanes, base, bins, counts, extremes):
+    """Count the lanes' values into a log histogram and widen its exact extremes; ``bins`` is room for the bins."""
     widen(values, lanes, extremes)
+    for j in range(bins.shape[0]):
+        bins[j] = np.uint64(bin_of(values[j], base))
     for j in range(lanes):
-        counts[bin_of(values[j], base)] += 1
+        counts[bins[j]] += 1
 
 
 @kernel()
@@ -209,6 +211,7 @@ def take_and_grow(settings, curve, lanes, take, start, removals, grown, growth, 
     factor, other = lanes[FACTOR], lanes[OTHER]
     r, k, shape = lanes[R], lanes[K], lanes[SHAPE]
     n = start.shape[0]
+    before = add_up(summary[SHORTFALLS], n)
     if settings.season == SHORT:
         for j in range(n):
             wanted = take[j] * factor[j] + other[j]
@@ -231,9 +234,10 @@ def take_and_grow(settings, curve, lanes, take, start, removals, grown, growth, 
             removals[j] = min(wanted, step)
             summary[SHORTFALLS, j] += 1.0 if wanted > step else 0.0
             abundance[j] = step - removals[j]
-    for j in range(n):
-        wanted = take[j] * factor[j] + other[j]
-        take[j] = take[j] * removals[j] / wanted if wanted > 0.0 else 0.0
+    if add_up(summary[SHORTFALLS], n) > before:  # rare: only then is the legal take less than the quota
+        for j in range(n):
+            wanted = take[j] * factor[j] + other[j]
+            take[j] *= removals[j] / wanted if removals[j] < wanted else 1.0
 
 
 @kernel()
@@ -302,6 +306,7 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
     state = np.zeros(width)
     fresh = np.empty(width)
     noise = np.empty(width)
+    bins = np.empty(width, np.uint64)
     memory = np.empty((settings.lag + 1, width))
     for b in range(blocks.shape[0]):
         block, curve, first_draw, drawn = blocks[b, 0], blocks[b, 1], blocks[b, 2], blocks[b, 3]
@@ -356,18 +361,18 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
                 add_values(removals, used, per_draw, REMOVALS, year_sums[t], sum_squares[t])
                 add_values(quota, used, per_draw, QUOTA, year_sums[t], sum_squares[t])
                 add_values(take, used, per_draw, LEGAL, year_sums[t], sum_squares[t])
-                fill_histogram(counted, used, settings.base, counts[0, t], extremes[0, t])
-                fill_histogram(removals, used, settings.base, counts[1, t], extremes[1, t])
+                fill_histogram(counted, used, settings.base, bins, counts[0, t], extremes[0, t])
+                fill_histogram(removals, used, settings.base, bins, counts[1, t], extremes[1, t])
                 if settings.rule > 0:
-                    fill_histogram(quota, used, settings.base, counts[2, t], extremes[2, t])
+                    fill_histogram(quota, used, settings.base, bins, counts[2, t], extremes[2, t])
             for j in range(min(used, settings.paths - first_draw * per_draw)):
                 i = first_draw * per_draw + j
                 paths[0, t, i] = start[j]
                 paths[1, t, i] = removals[j]
                 paths[2, t, i] = counted[j]
                 paths[3, t, i] = quota[j]
-            last[:] = quota
-            start[:] = abundance
+            last, quota = quota, last
+            start, abundance = abundance, start
         summary[FINAL] = counted
         for row in range(SUMMARY):
             for j in range(used):

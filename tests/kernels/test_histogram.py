@@ -28,7 +28,7 @@ SHAPES = {
 def counted(x, reference=None):
     base = base_of(x.max() if reference is None else reference)
     counts, extremes = np.zeros(BINS, np.int32), np.array([1e300, -1e300])
-    fill_histogram(x, x.size, base, counts, extremes)
+    fill_histogram(x, x.size, base, np.empty(x.size, np.uint64), counts, extremes)
     return counts, base, extremes
 
 
@@ -89,5 +89,5 @@ def test_every_value_lies_within_its_bin():
 
 def test_only_the_lanes_in_use_are_counted():
     counts, extremes = np.zeros(BINS, np.int32), np.array([1e300, -1e300])
-    fill_histogram(np.array([5.0, 6.0, 1.0, 900.0]), 2, base_of(10.0), counts, extremes)
+    fill_histogram(np.array([5.0, 6.0, 1.0, 900.0]), 2, base_of(10.0), np.empty(4, np.uint64), counts, extremes)
     assert (counts.sum(), extremes.tolist()) == (2, [5.0, 6.0])
