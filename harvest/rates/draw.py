@@ -18,18 +18,10 @@ from harvest.rates.approach import approach
 from harvest.rates.distributions import DOMAINS, Interval, outside, quantile
 from harvest.rates.streams import stream
 from harvest.rates.table import Rates
+from harvest.record.fields import CORRELATED
 from harvest.record.model import CurveChoice, Distribution, Record
 
-#: Rates that may be correlated, in the order of their Cholesky factor.
-CORRELATED = (
-    "growth_rate",
-    "max_growth",
-    "carrying_capacity",
-    "shape",
-    "process_noise",
-    "demographic_noise",
-    "autocorrelation",
-)
+#: States of nature to draw, unless said otherwise.
 DRAWS = 10_000
 
 
