@@ -284,7 +284,7 @@ carrying_capacity = { distribution = "90% between", low = 21000, high = 34000 }
 process_noise = { distribution = "uniform", low = 0.04, high = 0.10 }
 
 [objectives]
-limit = 4000
+limit = 3000
 ceiling = 9000
 horizon = 15
 tolerance = 0.05

@@ -22,6 +22,7 @@ _HOMES = {
     "project": "harvest.futures",
     "trace_risk": "harvest.futures",
     "recommend_quota": "harvest.futures",
+    "find_quota": "harvest.futures",
     "make_quota_table": "harvest.plan",
     "HarvestError": "harvest.errors",
     "RecordError": "harvest.errors",

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import io
+import sys
 from importlib import import_module
 
 import click
@@ -52,6 +54,9 @@ def group() -> None:
 
 def main() -> None:
     """Run the command; bad input ends with a message and exit status 2."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="replace")  # a name that the terminal cannot show must not stop the work
     try:
         group(standalone_mode=True)
     except HarvestError as error:

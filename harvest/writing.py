@@ -3,11 +3,48 @@
 from __future__ import annotations
 
 import os
-import tempfile
+import secrets
+import sys
 from contextlib import suppress
 from pathlib import Path
 
 from harvest.errors import SettingsError
+
+
+def write_new(path: Path, data: bytes) -> None:
+    """Write a file that must not exist yet, down to the disk; where that fails nothing is left of it.
+
+    A process that is killed meanwhile can leave a part of it: write under a name that nobody reads, and rename.
+
+    Raises
+    ------
+    FileExistsError
+        When something of that name is there already; it stays as it is.
+    OSError
+        When it cannot be written.
+    """
+    handle = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0), 0o666)
+    try:
+        with os.fdopen(handle, "wb") as stream:
+            stream.write(data)
+            stream.flush()
+            os.fsync(stream.fileno())
+    except BaseException:
+        with suppress(OSError):
+            path.unlink(missing_ok=True)
+        raise
+
+
+def flush_folder(folder: Path) -> None:
+    """Write the folder's list of names down to the disk, where the system can."""
+    if sys.platform == "win32":
+        return
+    with suppress(OSError):  # some network drives cannot
+        handle = os.open(folder, os.O_RDONLY)
+        try:
+            os.fsync(handle)
+        finally:
+            os.close(handle)
 
 
 def write_whole(path: Path, data: bytes) -> None:
@@ -18,23 +55,20 @@ def write_whole(path: Path, data: bytes) -> None:
     SettingsError
         When it cannot be written; what was there stays.
     """
-    handle, unfinished = -1, ""
     try:
         path.parent.mkdir(parents=True, exist_ok=True)
-        handle, unfinished = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
-        with os.fdopen(handle, "wb") as stream:
-            stream.write(data)
-            stream.flush()
-            os.fsync(stream.fileno())
-        mask = os.umask(0)
-        os.umask(mask)
-        Path(unfinished).chmod(0o666 & ~mask)
-        Path(unfinished).replace(path)
-    except OSError as error:
-        if unfinished:
+        unfinished = path.parent / f".{secrets.token_hex(8)}.unfinished"
+        write_new(unfinished, data)
+        try:
+            os.replace(unfinished, path)  # noqa: PTH105 (one named step, which the tests interrupt)
+        except BaseException:
             with suppress(OSError):
-                Path(unfinished).unlink(missing_ok=True)
+                unfinished.unlink(missing_ok=True)
+            raise
+        flush_folder(path.parent)
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
         raise SettingsError(
-            f"{str(path)!r} cannot be written: {error.strerror or error}. Check the folder's name and the right "
+            f"{str(path)!r} cannot be written: {reason}. Check the folder's name and the right "
             "to write there; nothing was changed."
         ) from error

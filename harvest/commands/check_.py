@@ -7,7 +7,7 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import FOLDER, JSON, SEED, write_json
+from harvest.commands.options import FOLDER, JSON, SEED, as_json, check_targets, save, tell
 
 
 @click.command("check")
@@ -21,6 +21,7 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
     from harvest.errors import CAUTION
     from harvest.record import check_record
 
+    check_targets(json_file)
     record, problems = check_record(folder)
     errors = [p for p in problems if p.severity == "error"]
     warnings = [p for p in problems if p.severity == "warning"]
@@ -48,6 +49,6 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
         "record_digest": None if record is None else record.digest(),
         "problems": [asdict(p) for p in problems],
     }
-    write_json(json_file, content)
+    tell(save(as_json(json_file, content)))
     if record is None:
         raise SystemExit(2)

@@ -8,13 +8,15 @@ from __future__ import annotations
 
 _SPREAD = "median, low50 to high50, low90 to high90: quantiles over draws; share: share of draws that have a value"
 _EVENTS = (
-    "below_limit, collapsed, above_ceiling, closed: in that year; ever_below_limit, ever_collapsed, "
-    "back_above_limit, under_ceiling: in that year or an earlier one, today excluded"
+    "below_limit, collapsed, above_ceiling, closed, at_target (at or above the target): in that year; "
+    "ever_below_limit, ever_collapsed, back_above_limit, under_ceiling: in that year or an earlier one, today excluded"
 )
 _QUANTILES = "low90, low50, median, high50, high90: quantiles over futures; mean and mean_se: mean, standard error"
 
 KEYS: dict[str, str] = {
-    "kind": "Which command wrote the file: check, yield, thresholds, project or quota.",
+    "kind": "Which command wrote the file: new, check, yield, thresholds, project or quota.",
+    "demo": "new: the demo that was copied; null for the template.",
+    "files": "new: the files that were made.",
     "version": "Version of Harvest.",
     "caution": "The usual cautions.",
     "name": 'The record\'s name, or "(private)".',
@@ -83,6 +85,8 @@ KEYS: dict[str, str] = {
     "branches[].*": "lower_ and upper_ with low90, low50, median, high50, high90: quantiles of the lower and upper "
     "equilibrium at the count's moment, over the draws that have them.",
     "futures_per_draw": "Futures projected from each draw.",
+    "projection_seed": "Seed of the futures (the same as seed unless a script says otherwise).",
+    "ever_bounded": "Share of futures in which the growth curve itself fell below zero and was held there.",
     "rule": "The rule in force.",
     "rule.name": "fixed quota, fixed share, escapement or ramp.",
     "rule.settings": "Settings of the rule, by name.",
@@ -91,13 +95,16 @@ KEYS: dict[str, str] = {
     "by_year": "project: one row a quota year.",
     "by_year[].quota_year": "Year of the quota.",
     "by_year[].count_year": "Year of the count that first shows its effect.",
-    "by_year[].*": f"abundance_ (at the count's moment), removals_ (total) and quota_ (legal) with {_QUANTILES}. "
+    "by_year[].*": f"abundance_ (at the count's moment), removals_ (total) and quota_ (legal) with {_QUANTILES}; "
+    "legal_mean: mean legal take. "
     f"Probabilities: {_EVENTS}; …_se their Monte Carlo standard errors.",
     "measures": "project: what the years add up to.",
     "measures[].measure": "Name of the measure.",
     "measures[].value": "Mean over futures.",
     "measures[].se": "Monte Carlo standard error, clustered by draw.",
     "horizon": "quota: quota years over which the risk counts.",
+    "tolerance": "quota: accepted chance of ever falling below the limit, as used.",
+    "first_quota_awaits_count": "quota: whether the first year's quota follows from a count that is not made yet.",
     "headline": "quota: the finding in one sentence.",
     "findings": "quota: the sentences under it.",
     "rule_risk": "quota: chance of ever falling below the limit within the horizon under the rule in force.",
@@ -111,6 +118,7 @@ KEYS: dict[str, str] = {
     "recommendation.criterion.year": "By which quota year, from 1.",
     "recommendation.criterion.bound": "The bound on its probability.",
     "recommendation.criterion.at_least": "Whether the bound is a lower one.",
+    "recommendation.criterion.assumed": "Whether the record states no such aim, and a default stands in.",
     "recommendation.quota": "Recommended legal quota a year, rounded; 0 is closure.",
     "recommendation.exact": "Before rounding.",
     "recommendation.qualifies": "Whether any quota qualifies.",
@@ -144,6 +152,7 @@ KEYS: dict[str, str] = {
     "quota_table[].ever_below_limit": "Chance of having been below the limit by then.",
     "quota_table[].ever_collapsed": "Chance of having collapsed by then.",
     "lookup_card": "quota: the rule as a table from count to quota.",
+    "lookup_card[].when": "count, or no count made.",
     "lookup_card[].count_from": "Lower edge of a band of the count; null in the row without a count.",
     "lookup_card[].count_below": "Upper edge; null for and above.",
     "lookup_card[].quota": "Legal quota of the band, from its lower edge.",
@@ -155,7 +164,7 @@ KEYS: dict[str, str] = {
     "steps[].why": "Why.",
     "compared": "quota: constant quotas side by side.",
     "compared[].quota": "Legal quota a year.",
-    "compared[].what": "no take, present quota, recommended, or empty.",
+    "compared[].what": "no take, present quota, recommended, least risk, several of them, or empty.",
     "compared[].ever_below_limit": "Chance of ever falling below the limit within the horizon.",
     "compared[].ever_below_limit_se": "Its Monte Carlo standard error.",
     "compared[].ever_collapsed": "Chance of ever collapsing within the horizon.",

@@ -7,7 +7,7 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import JSON, write_json
+from harvest.commands.options import JSON, as_json, save, tell
 
 
 @click.command("keys")
@@ -19,4 +19,4 @@ def command(json_file: Path | None) -> None:
     for key, meaning in KEYS.items():
         click.echo(f"{key}")
         click.echo(textwrap.indent(textwrap.fill(meaning, 96), "    "))
-    write_json(json_file, KEYS)
+    tell(save(as_json(json_file, dict(KEYS))))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import sys
+import tempfile
 from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -87,11 +88,48 @@ class Progress:
         self.task = task
 
 
-def write_json(json_file: Path | None, content: dict[str, Any]) -> None:
-    """Write the results as JSON where a file was asked for."""
-    if json_file is not None:
-        from harvest.plan.json_files import json_bytes
-        from harvest.writing import write_whole
+def check_targets(*files: Path | None) -> None:
+    """Find out before the work begins whether the files that it is for can be written.
 
-        write_whole(json_file, json_bytes(content))
-        click.echo(f"Written: {json_file}")
+    Raises
+    ------
+    SettingsError
+        Where one cannot.
+    """
+    from harvest.errors import SettingsError
+
+    for file in files:
+        if file is not None:
+            try:
+                file.parent.mkdir(parents=True, exist_ok=True)
+                with tempfile.TemporaryFile(dir=file.parent):
+                    pass
+            except OSError as error:
+                raise SettingsError(
+                    f"{str(file)!r} cannot be written: {error.strerror or error}. Check the folder's name and the "
+                    "right to write there."
+                ) from error
+
+
+def save(files: dict[Path, bytes]) -> list[str]:
+    """Write files, each whole or not at all; the lines to print at the end."""
+    from harvest.writing import write_whole
+
+    for file, data in files.items():
+        write_whole(file, data)
+    return [f"Written: {file}" for file in files]
+
+
+def as_json(json_file: Path | None, content: dict[str, Any]) -> dict[Path, bytes]:
+    """The results as a JSON file, where one was asked for."""
+    if json_file is None:
+        return {}
+    from harvest.plan.json_files import json_bytes
+
+    return {json_file: json_bytes(content)}
+
+
+def tell(lines: list[str]) -> None:
+    """Print lines after the results."""
+    for line in lines:
+        click.echo(line)

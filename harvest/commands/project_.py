@@ -6,7 +6,7 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import Progress, load_with_rates, simulated, write_json
+from harvest.commands.options import Progress, as_json, check_targets, load_with_rates, save, simulated, tell
 from harvest.commands.rule_option import RULE, parse_rule
 
 _CHANCES = ("below_limit", "ever_below_limit", "ever_collapsed", "closed")
@@ -29,6 +29,7 @@ def command(
 ) -> None:
     """What a rule does to the population of FOLDER: the record's rule, else the present quota every year."""
     rule = parse_rule(rule_text)
+    check_targets(json_file)
     record, rates = load_with_rates(folder, seed, draws)
     from harvest.commands import show
     from harvest.errors import SettingsError
@@ -53,6 +54,7 @@ def command(
         threads=threads,
         progress=lambda done, total: progress("the years ahead", done, total),
     )
+    written = save(as_json(json_file, future_json(record, rates, future)))
     unit, table = record.unit, future.by_year
     show.title(f"{record.name}: {rule} ({len(rates) * futures:,} futures, seed {seed})")
     show.grid(
@@ -80,4 +82,4 @@ def command(
         [[str(m).capitalize(), f"{v:,.4g}", f"{e:.2g}"] for m, v, e in future.measures.itertuples(index=False)],
     )
     show.caution()
-    write_json(json_file, future_json(record, rates, future))
+    tell(written)

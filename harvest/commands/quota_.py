@@ -3,11 +3,15 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import click
 
-from harvest.commands.options import Progress, load_with_rates, simulated, write_json
+from harvest.commands.options import Progress, as_json, check_targets, load_with_rates, save, simulated, tell
 from harvest.commands.rule_option import RULE, parse_rule
+
+if TYPE_CHECKING:
+    from harvest.plan import QuotaTable
 
 
 @click.command("quota")
@@ -39,9 +43,11 @@ def command(
 ) -> None:
     """The recommended quota of FOLDER, read off a risk curve, and the table for the management plan."""
     rule = parse_rule(rule_text)
+    check_targets(json_file, out / "quota.xlsx" if out else None)
     record, rates = load_with_rates(folder, seed, draws)
     from harvest.commands import show
     from harvest.plan import make_quota_table
+    from harvest.plan.assumptions import rates_words
     from harvest.plan.json_files import quota_json
     from harvest.plan.layout import parts, shown
     from harvest.plan.sentences import findings, headline
@@ -58,8 +64,9 @@ def command(
         threads=threads,
         report=Progress(),
     )
+    written = save({**_files(table, out), **as_json(json_file, quota_json(table))})
     count = f"{rates.count_survey} of {rates.count_year}"
-    click.echo(f"\n{record.name} · quota of {rates.first_year} · from the {count} · rates stated, not fitted")
+    click.echo(f"\n{record.name} · quota of {rates.first_year} · from the {count} · rates {rates_words(rates)}")
     show.title(headline(table))
     for sentence in findings(table):
         show.paragraph(sentence)
@@ -71,16 +78,18 @@ def command(
         show.grid(part.headings, rows, left=left)
     show.caution()
     click.echo(f"\nSeed {seed}, {len(rates):,} draws, record {rates.record_digest[:12]}, Harvest {table.version}.")
-    if out is not None:
-        from harvest.plan.csv_files import card_csv, quota_csv
-        from harvest.plan.workbook import quota_workbook
-        from harvest.writing import write_whole
+    tell(written)
 
-        for name, data in (
-            ("quota_table.csv", quota_csv(table)),
-            ("lookup_card.csv", card_csv(table)),
-            ("quota.xlsx", quota_workbook(table)),
-        ):
-            write_whole(out / name, data)
-            click.echo(f"Written: {out / name}")
-    write_json(json_file, quota_json(table))
+
+def _files(table: QuotaTable, out: Path | None) -> dict[Path, bytes]:
+    """The CSV files and the workbook, where a folder was asked for."""
+    if out is None:
+        return {}
+    from harvest.plan.csv_files import card_csv, quota_csv
+    from harvest.plan.workbook import quota_workbook
+
+    return {
+        out / "quota_table.csv": quota_csv(table),
+        out / "lookup_card.csv": card_csv(table),
+        out / "quota.xlsx": quota_workbook(table),
+    }

@@ -6,13 +6,14 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import drawn, load_with_rates, write_json
+from harvest.commands.options import as_json, check_targets, drawn, load_with_rates, save, tell
 
 
 @click.command("yield")
 @drawn
 def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None:
     """What the population of FOLDER can sustain: over draws, the median with 50% and 90% intervals."""
+    check_targets(json_file)
     record, rates = load_with_rates(folder, seed, draws)
     from harvest.commands import show
     from harvest.commands.spreads import row, table
@@ -22,6 +23,7 @@ def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None
     from harvest.yields.summary import standing_year
 
     summary = summarise_yield(record, rates)
+    written = save(as_json(json_file, yield_json(record, rates, summary)))
     s, unit, what = summary.spreads, record.unit, words.kind(record)
     show.title(f"{record.name}: what it can sustain (rates {rates.origin}, {len(rates):,} draws, seed {seed})")
     moment = words.moment(record)
@@ -29,7 +31,7 @@ def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None
         [
             row(f"Abundance {moment}, {standing_year(record, rates)}", s["abundance"], unit),
             row("Carrying capacity", s["K"], unit),
-            row("Greatest per-head growth, a year", s["greatest_growth"], "rate"),
+            row("Greatest per-head growth, a year", s["greatest_growth"], "rate", absent="no upper bound"),
             row("Greatest sustainable yield (MSY), total removals a year", s["msy"], unit),
             row(f"Abundance that gives it, {moment}", s["msy_abundance"], unit),
             row("Harvest rate that gives it (share of the season's start)", s["msy_share"], "rate"),
@@ -46,15 +48,15 @@ def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None
     if summary.above_msy_rate is not None and summary.present_removals is not None:
         present = words.number(summary.present_removals, unit)
         show.paragraph(
-            f"Chance that present removals (legal take {present} a year, with losses) are above the rate that gives "
-            f"MSY: {words.probability(summary.above_msy_rate)}."
+            f"Chance that present removals (latest legal take, {present} a year, with losses) are above the rate "
+            f"that gives MSY: {words.probability(summary.above_msy_rate)}."
         )
     if summary.declines_unharvested > 0.0005:
         show.paragraph(
             "Chance that the population declines even unharvested (above its carrying capacity, or below an Allee "
             f"threshold): {words.probability(summary.declines_unharvested)}."
         )
-    if summary.unstable > 0.0:
+    if summary.unstable >= 0.001:
         show.paragraph(
             f"Warning: in {words.probability(summary.unstable)} of the draws growth is so strong that the yearly "
             "step overshoots and does not settle (May 1976); check the growth rate and the shape."
@@ -75,4 +77,4 @@ def command(folder: Path, seed: int, draws: int, json_file: Path | None) -> None
         left=(),
     )
     show.caution()
-    write_json(json_file, yield_json(record, rates, summary))
+    tell(written)

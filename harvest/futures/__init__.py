@@ -1,5 +1,6 @@
 """What happens to each draw under a rule, and the quota that the risk allows."""
 
+from harvest.futures.find import find_quota
 from harvest.futures.project import Future, project
 from harvest.futures.recommend import Recommendation, pick_question, recommend_quota
 from harvest.futures.risk import RiskCurve, trace_risk
@@ -10,6 +11,7 @@ __all__ = [
     "Recommendation",
     "RiskCurve",
     "Rule",
+    "find_quota",
     "fixed_quota",
     "pick_question",
     "project",

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, field
 
@@ -27,6 +28,7 @@ EVENT_COLUMNS = {
     "back_above_limit": kernel.BACK,
     "under_ceiling": kernel.UNDER,
     "closed": kernel.CLOSED,
+    "at_target": kernel.AT_TARGET,
 }
 _QUANTILE_NAMES = ("low90", "low50", "median", "high50", "high90")
 
@@ -39,13 +41,15 @@ class Future:
     ----------
     rule : Rule
     by_year : DataFrame
-        One row a quota year: ``quota_year``, ``count_year`` (of the count that shows its effect); quantiles
-        and mean of ``abundance`` (at the count's moment, after that year's take), ``removals`` (total) and
-        ``quota`` (legal); each probability of :data:`EVENT_COLUMNS` with its Monte Carlo standard error
-        (``…_se``). "Ever" counts years 1 to this one, today excluded; "back above the limit" and "under the
-        ceiling" mean in this year or an earlier one.
+        One row a quota year: ``quota_year``, ``count_year`` (of the count that shows its effect); quantiles and
+        mean of ``abundance`` (at the count's moment, after that year's take), ``removals`` (total) and ``quota``
+        (legal); ``legal_mean``, the mean legal take; each probability of :data:`EVENT_COLUMNS` with its Monte
+        Carlo standard error (``…_se``). "Ever" counts years 1 to this one, today excluded; "back above the limit"
+        and "under the ceiling" mean in this year or an earlier one.
     measures : DataFrame
         One row a measure: ``measure``, ``value``, ``se``.
+    ever_bounded : float
+        Share of futures in which the growth curve itself fell below zero and was held there.
     paths : ndarray, shape (4, years, n)
         Start, removals, counted abundance and quota of the first futures.
     draws, futures_per_draw, seed, record_digest, version
@@ -54,6 +58,7 @@ class Future:
     rule: Rule
     by_year: pd.DataFrame
     measures: pd.DataFrame
+    ever_bounded: float
     paths: np.ndarray
     draws: int
     futures_per_draw: int
@@ -118,6 +123,7 @@ def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd
             levels = _year_quantiles(tally, row, prepared.base)
         for i, quantile_name in enumerate(_QUANTILE_NAMES):
             table[f"{name}_{quantile_name}"] = levels[:, i]
+    table["legal_mean"] = tally.sums[:, kernel.LEGAL] / futures
     for name, row in EVENT_COLUMNS.items():
         p = tally.events[:, row] / futures
         table[name] = p
@@ -127,21 +133,25 @@ def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd
 
 def _measures(prepared: Prepared, tally: Tally, years: int) -> pd.DataFrame:
     """Measures over the whole projection from the summary rows, one a future."""
-    rows = []
-    for name, row, scale in (
-        ("mean yearly legal take", kernel.TOTAL_LEGAL, years),
-        ("mean yearly change of the quota", kernel.TOTAL_CHANGE, max(years - 1, 1)),
-        ("ever below the limit", kernel.FIRST_BELOW, None),
-        ("ever collapsed", kernel.FIRST_COLLAPSED, None),
-        ("share of years closed", kernel.CLOSURES, years),
-        ("share of years with less to take than the quota", kernel.SHORTFALLS, years),
-        ("share of years held at zero by the growth curve", kernel.BOUNDED, years),
-        ("abundance at the end", kernel.FINAL, 1),
-        ("lowest abundance", kernel.LEAST, 1),
-    ):
-        values = tally.summary[row]
-        mean, error = clustered(values > 0 if scale is None else values, prepared.futures_per_draw)
-        rows.append((name, mean / (scale or 1), error / (scale or 1)))
+    s, per_draw = tally.summary, prepared.futures_per_draw
+
+    def spread() -> np.ndarray:
+        mean = s[kernel.TOTAL_LEGAL] / years
+        return np.sqrt(np.maximum(s[kernel.TOTAL_SQUARES] / years - mean * mean, 0.0))
+
+    made: dict[str, Callable[[], np.ndarray]] = {
+        "mean yearly legal take": lambda: s[kernel.TOTAL_LEGAL] / years,
+        "standard deviation of the legal take between years": spread,
+        "mean yearly change of the quota": lambda: s[kernel.TOTAL_CHANGE] / max(years - 1, 1),
+        "ever below the limit": lambda: s[kernel.FIRST_BELOW] > 0,
+        "ever collapsed": lambda: s[kernel.FIRST_COLLAPSED] > 0,
+        "share of years closed": lambda: s[kernel.CLOSURES] / years,
+        "share of years with less to take than the quota": lambda: s[kernel.SHORTFALLS] / years,
+        "share of years held at zero by the growth curve": lambda: s[kernel.BOUNDED] / years,
+        "mean abundance at the end": lambda: s[kernel.FINAL],
+        "mean of the lowest abundance": lambda: s[kernel.LEAST],
+    }
+    rows = [(name, *clustered(values(), per_draw)) for name, values in made.items()]
     return pd.DataFrame(rows, columns=["measure", "value", "se"])
 
 
@@ -161,6 +171,7 @@ def project_prepared(
         rule=rule,
         by_year=_years_table(prepared, tally, rule, years),
         measures=_measures(prepared, tally, years),
+        ever_bounded=float(np.mean(tally.summary[kernel.BOUNDED] > 0.0)),
         paths=tally.paths,
         draws=len(prepared.rates),
         futures_per_draw=prepared.futures_per_draw,

@@ -19,18 +19,22 @@ from harvest.rates import Rates
 from harvest.record.model import ByYear, Record
 
 QUESTIONS = ("limit", "recovery", "reduction")
-_DEFAULT_AIM = ByYear(years=10, chance=0.8)
+DEFAULT_AIM = ByYear(years=10, chance=0.8)
 
 
 @dataclass(frozen=True)
 class Criterion:
-    """What a quota must satisfy: the event's probability by a year at most (or at least) a bound."""
+    """What a quota must satisfy: the event's probability by a year at most (or at least) a bound.
+
+    ``assumed``: the record states no such aim, and :data:`DEFAULT_AIM` stands in.
+    """
 
     question: str
     event: str
     year: int
     bound: float
     at_least: bool
+    assumed: bool = False
 
     def excess(self, curve: RiskCurve) -> np.ndarray:
         """How far each quota of the curve is from qualifying: 0 or below qualifies, shape (q,)."""
@@ -94,6 +98,21 @@ def pick_question(record: Record, rates: Rates) -> str:
     return "limit"
 
 
+def check_question(record: Record, rates: Rates, question: str) -> None:
+    """A recovery is asked only of a population below its limit: one above it is "back" at once, whatever is taken.
+
+    Raises
+    ------
+    SettingsError
+        For the recovery of a population that is above its limit in most draws.
+    """
+    if question == "recovery" and record.objectives.limit is not None and pick_question(record, rates) != "recovery":
+        raise SettingsError(
+            "the population is above its limit in most draws, so there is nothing to recover from: "
+            'ask the question "limit"'
+        )
+
+
 def criterion_of(
     record: Record, question: str, *, tolerance: float | None = None, horizon: int | None = None
 ) -> Criterion:
@@ -102,7 +121,7 @@ def criterion_of(
     Raises
     ------
     SettingsError
-        Unknown question, tolerance outside 0..1, a reduction without a ceiling.
+        Unknown question, tolerance outside 0..1, a recovery without a limit, a reduction without a ceiling.
     """
     aims = record.objectives
     if question not in QUESTIONS:
@@ -110,16 +129,18 @@ def criterion_of(
     if question == "limit":
         bound = aims.tolerance if tolerance is None else tolerance
         if not 0.0 < bound < 1.0:
-            raise SettingsError(f"risk tolerance {bound:g} is not allowed: give a number between 0 and 1")
+            hint = f" ({bound:g}% is {bound / 100.0:g})" if 1.0 <= bound < 100.0 else ""
+            raise SettingsError(f"risk tolerance {bound:g} is not allowed: give a number between 0 and 1{hint}")
         year = aims.horizon if horizon is None else horizon
         return Criterion(question, "ever_below_limit", year, bound, at_least=False)
-    if question == "recovery":
-        aim = aims.recovery or _DEFAULT_AIM
-        return Criterion(question, "back_above_limit", aim.years, aim.chance, at_least=True)
-    if aims.ceiling is None:
-        raise SettingsError("a reduction needs a ceiling: state objectives.ceiling in the record")
-    aim = aims.reduction or _DEFAULT_AIM
-    return Criterion(question, "under_ceiling", aim.years, aim.chance, at_least=True)
+    recovery = question == "recovery"
+    needed, name = (aims.limit, "limit") if recovery else (aims.ceiling, "ceiling")
+    if needed is None:
+        raise SettingsError(f"a {question} needs a {name}: state objectives.{name} in the record")
+    stated = aims.recovery if recovery else aims.reduction
+    aim = stated or DEFAULT_AIM
+    event = "back_above_limit" if recovery else "under_ceiling"
+    return Criterion(question, event, aim.years, aim.chance, at_least=True, assumed=stated is None)
 
 
 def qualifying_runs(quotas: np.ndarray, excess: np.ndarray) -> list[tuple[float, float]]:

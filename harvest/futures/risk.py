@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from concurrent.futures import ThreadPoolExecutor
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -51,6 +51,18 @@ class RiskCurve:
         """Quota years of the curve."""
         return int(self.probability["below_limit"].shape[1])
 
+    def merged(self, other: RiskCurve) -> RiskCurve:
+        """Both curves as one; where they share a quota this one's values stay (they are the same futures)."""
+        fresh = ~np.isin(other.quotas, self.quotas)
+        quotas = np.concatenate([self.quotas, other.quotas[fresh]])
+        order = np.argsort(quotas)
+
+        def together(mine: dict[str, np.ndarray], more: dict[str, np.ndarray]) -> dict[str, np.ndarray]:
+            return {name: np.concatenate([mine[name], more[name][fresh]])[order] for name in mine}
+
+        probability, se = together(self.probability, other.probability), together(self.se, other.se)
+        return replace(self, quotas=quotas[order], probability=probability, se=se)
+
     def at(self, event: str, quota: float, year: int) -> tuple[float, float]:
         """Probability of an event by the year-th quota year (from 1) and its standard error, interpolated.
 
@@ -68,17 +80,17 @@ class RiskCurve:
 
 
 def highest_quota(record: Record, rates: Rates) -> float:
-    """Where the curve ends unless stated: well beyond the fold, the present quota and a cull to the ceiling.
+    """Where the curve ends unless stated: well beyond the fold and a cull to the ceiling.
 
     Rounded up as a quota is, so that a smallest cull rounded up is still on the curve.
     """
-    factor = rates.factor
-    fold = np.maximum(0.0, (rates.closed_form("msy") - rates.column("other")) / factor)
-    tops = [1.3 * float(np.quantile(fold, 0.95)), 1.3 * (record.present_quota or 0.0)]
+    fold = rates.legal_take(rates.closed_form("msy"))
+    reach = [fold]
     if record.objectives.ceiling is not None:
         surplus = rates.column("abundance") - rates.level(record.objectives.ceiling, 0.0)
-        tops.append(1.3 * float(np.quantile(np.maximum(0.0, surplus) / factor + fold, 0.95)))
-    return round_up(max(tops) or 1.0, record.unit)
+        reach.append(np.maximum(0.0, surplus) / rates.factor + fold)
+    top = 1.3 * max(float(np.quantile(r, 0.95)) for r in reach)
+    return round_up(top or 1.0, record.unit)
 
 
 def check_quotas(quotas: Sequence[float] | np.ndarray) -> np.ndarray:
@@ -87,6 +99,12 @@ def check_quotas(quotas: Sequence[float] | np.ndarray) -> np.ndarray:
     if given.size == 0 or not np.isfinite(given).all() or given[0] < 0.0:
         raise SettingsError("the quotas of a risk curve must be numbers from 0, at least one")
     return given
+
+
+def with_zero_and_present(record: Record, quotas: Sequence[float] | np.ndarray) -> np.ndarray:
+    """Quotas in order, with zero and the present quota among them."""
+    present = [] if record.present_quota is None else [record.present_quota]
+    return check_quotas(np.concatenate([[0.0], present, np.asarray(quotas, float)]))
 
 
 def trace_prepared(
@@ -141,7 +159,7 @@ def trace_risk(
     record, rates : Record, Rates
     quotas : sequence of float
         Legal quotas; default ``points`` evenly spaced from 0 to :func:`highest_quota`. Zero and the present
-        quota are always added.
+        quota are always added. :func:`harvest.futures.find.find_quota` adds more where the answer lies.
     years : int
         Default: :func:`curve_years`.
     losses : bool
@@ -156,8 +174,7 @@ def trace_risk(
         raise SettingsError(f"{points} points are too few for a risk curve: give at least 2")
     if quotas is None:
         quotas = np.linspace(0.0, highest_quota(record, rates), points)
-    present = [] if record.present_quota is None else [record.present_quota]
-    given = check_quotas(np.concatenate([[0.0], present, np.asarray(quotas, float)]))
+    given = with_zero_and_present(record, quotas)
     with workers(threads) as pool:
         return trace_prepared(
             prepare(record, rates, futures_per_draw=futures_per_draw, losses=losses),

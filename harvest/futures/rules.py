@@ -10,7 +10,7 @@ import numpy as np
 
 from harvest.errors import SettingsError
 from harvest.kernels import rules as kernels
-from harvest.record.model import RuleChoice
+from harvest.record.model import WITHOUT_COUNT, RuleChoice
 
 #: Kernel code and settings, in the kernel's order, of each rule.
 RULES: dict[str, tuple[int, tuple[str, ...]]] = {
@@ -43,7 +43,7 @@ class Rule:
 
     name: str
     settings: tuple[float, ...]
-    without_count: float = 0.8
+    without_count: float = WITHOUT_COUNT
 
     def __post_init__(self) -> None:
         check_rule(self)
@@ -120,7 +120,7 @@ def rule_from(name: str, settings: Mapping[str, float]) -> Rule:
     if unknown or missing:
         told = [f"{n} is missing" for n in missing] + [f"{n} is unknown" for n in unknown]
         raise SettingsError(f"the rule {name} takes {', '.join((*names, 'without_count'))}: {'; '.join(told)}")
-    return Rule(name, tuple(float(settings[n]) for n in names), float(settings.get("without_count", 0.8)))
+    return Rule(name, tuple(float(settings[n]) for n in names), float(settings.get("without_count", WITHOUT_COUNT)))
 
 
 def rule_of(choice: RuleChoice) -> Rule:

@@ -23,21 +23,21 @@ from harvest.kernels.vectormath import exp
 LANES = 256
 
 #: Columns of the draws, shape (COLUMNS, draws); the abundances of years before the first follow, oldest first.
-R, K, SHAPE, SIGMA, SIGMA_DEMO, RHO, START, FACTOR, OTHER, BIAS, LIMIT, COLLAPSE, CEILING, WEATHER = range(14)
-COLUMNS = 14
+R, K, SHAPE, SIGMA, SIGMA_DEMO, RHO, START, FACTOR, OTHER, BIAS, LIMIT, COLLAPSE, CEILING, TARGET, WEATHER = range(15)
+COLUMNS = 15
 
 #: Yearly events, counted over futures: rows of ``year_events`` (years, EVENTS).
-BELOW, EVER_BELOW, COLLAPSED, EVER_COLLAPSED, ABOVE, BACK, UNDER, CLOSED = range(8)
-EVENTS = 8
+BELOW, EVER_BELOW, COLLAPSED, EVER_COLLAPSED, ABOVE, BACK, UNDER, CLOSED, AT_TARGET = range(9)
+EVENTS = 9
 
 #: Yearly sums over futures: columns of ``year_sums`` (years, SUMMED).
 ABUNDANCE, REMOVALS, QUOTA, LEGAL = range(4)
 SUMMED = 4
 
 #: One summary row a future: rows of ``summary`` (SUMMARY, futures). Years count from 1; 0 is never.
-(FIRST_BELOW, FIRST_COLLAPSED, FIRST_BACK, FIRST_UNDER, CLOSURES, TOTAL_LEGAL, TOTAL_CHANGE, SHORTFALLS, BOUNDED,
- FINAL, LEAST) = range(11)  # fmt: skip
-SUMMARY = 11
+(FIRST_BELOW, FIRST_COLLAPSED, FIRST_BACK, FIRST_UNDER, CLOSURES, TOTAL_LEGAL, TOTAL_SQUARES, TOTAL_CHANGE, SHORTFALLS,
+ BOUNDED, FINAL, LEAST) = range(12)  # fmt: skip
+SUMMARY = 12
 
 
 class Settings(NamedTuple):
@@ -243,7 +243,7 @@ def take_and_grow(settings, curve, lanes, take, start, removals, grown, growth, 
 @kernel()
 def judge(lanes, counted, year, flags, summary):
     """Yearly events of each lane from the abundance at the count's moment; first years go to the summary."""
-    limit, collapse, ceiling = lanes[LIMIT], lanes[COLLAPSE], lanes[CEILING]
+    limit, collapse, ceiling, target = lanes[LIMIT], lanes[COLLAPSE], lanes[CEILING], lanes[TARGET]
     now = year + 1.0
     for j in range(counted.shape[0]):
         x = counted[j]
@@ -257,6 +257,7 @@ def judge(lanes, counted, year, flags, summary):
         flags[BELOW, j] = below
         flags[COLLAPSED, j] = collapsed
         flags[ABOVE, j] = above
+        flags[AT_TARGET, j] = 1.0 if x >= target[j] else 0.0
         flags[EVER_BELOW, j] = 1.0 if summary[FIRST_BELOW, j] > 0.0 else 0.0
         flags[EVER_COLLAPSED, j] = 1.0 if summary[FIRST_COLLAPSED, j] > 0.0 else 0.0
         flags[BACK, j] = 1.0 if summary[FIRST_BACK, j] > 0.0 else 0.0
@@ -353,6 +354,7 @@ def project_blocks(settings, rule_settings, available, recorded, blocks, draws, 
                 flags[CLOSED, j] = closed
                 summary[CLOSURES, j] += closed
                 summary[TOTAL_LEGAL, j] += take[j]
+                summary[TOTAL_SQUARES, j] += take[j] * take[j]
                 summary[TOTAL_CHANGE, j] += abs(quota[j] - last[j]) if t > 0 else 0.0
             for row in range(EVENTS):
                 count_events(flags[row], used, per_draw, row, year_events[t], event_squares[t])

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-_RISKY = ("=", "+", "-", "@", "\t", "\r")
+from harvest.record.history import RISKY
 
 
 def is_risky(text: str) -> bool:
     """Whether a spreadsheet would read the text as a formula or a command."""
-    return text.startswith(_RISKY)
+    return text.startswith(tuple(RISKY))
 
 
 def csv_text(text: str) -> str:

@@ -57,44 +57,57 @@ def _quota_part(table: QuotaTable) -> Part:
         "ever_collapsed",
     )
     values = tuple(tuple(float(row[n]) for n in names) for _, row in rows.iterrows())
-    note = f"In {what}; abundance {words.moment(record)}, median and 90% interval over futures."
-    if feedback:
-        note += f" {table.rates.first_year} is the quota to set; later years are medians of what the rule will give."
-    return Part(f"Quota table, {words.years_words(table.rates.first_year, len(rows))}", note, headings, kinds, values)
+    note = f"In {what}; abundance {words.moment(record)}, median and 90% interval over futures. "
+    note += f"The limit is {words.limit_words(record).rstrip(',')}; collapsed is below {words.collapse_words(record)}."
+    first = table.rates.first_year
+    if table.awaits_count:
+        note += f" The quota of {first} follows from a count that is not made yet: quotas are medians of what may come."
+    elif feedback:
+        note += f" {first} is the quota to set; later years are medians of what the rule will give."
+    return Part(f"Quota table, {words.years_words(first, len(rows))}", note, headings, kinds, values)
+
+
+def _card_note(table: QuotaTable) -> str:
+    """What the card's counts are, and how the card relates to the risk that is shown."""
+    note = f"The count that serves each year's quota, as counted ({words.moment(table.record)}). Rule: {table.rule}."
+    if table.rule.feedback:
+        if table.count_bias != 1.0:
+            note += f" The rule divides a count by {table.count_bias:.3g}, the survey's stated bias."
+        return note + (
+            " Each band has the quota of its lower edge, so the card never gives more than the rule at the count "
+            "itself; the risk shown is the rule's, and the card is on its safe side."
+        )
+    if len(table.card) > 2:
+        stops = "the ceiling" if table.recommendation.criterion.question == "reduction" else "the limit"
+        note += (
+            f" A count under {stops} stops the take until the plan is reviewed; the risk shown does not count on that."
+        )
+    return note
 
 
 def _card_part(table: QuotaTable) -> Part:
-    record = table.record
     rows: list[tuple[Value, ...]] = []
     for _, row in table.card.iterrows():
-        low, high, quota, share = (float(v) for v in row)
+        low, high, quota, share = (float(row[n]) for n in ("count_from", "count_below", "quota", "share_of_last"))
+        given: Value = quota if math.isnan(share) else f"{words.percent(share)} of last quota"
         if math.isnan(low):
-            given: Value = quota
-            if not math.isnan(share):
-                given = f"{words.percent(share)} of last quota"
-            rows.append(("no count made", "", given))
+            rows.append((str(row["when"]), "", given))
         else:
-            rows.append((low, None if math.isnan(high) else high, quota))
-    next_count = f"The count that serves each year's quota, as counted ({words.moment(record)})."
-    if table.rule.feedback and table.count_bias != 1.0:
-        next_count += f" The rule divides it by {table.count_bias:.3g}, the survey's stated bias."
-    return Part(
-        "Lookup card",
-        f"{next_count} Rule: {table.rule}. Quotas from each band's lower edge.",
-        ("Count from", "to below", "Legal quota"),
-        ("amount", "amount", "amount"),
-        tuple(rows),
-    )
+            rows.append((low, None if math.isnan(high) else high, given))
+    kinds = ("amount", "amount", "amount")
+    return Part("Lookup card", _card_note(table), ("Count from", "to below", "Legal quota"), kinds, tuple(rows))
 
 
 def _steps_part(table: QuotaTable) -> Part:
     rows = tuple((r["step"], float(r["value"]), r["of"], r["why"]) for _, r in table.steps.iterrows())
     note = f"In {words.kind(table.record)}" + ("." if table.rule.feedback else " a year.")
+    if not table.is_recommended and not table.rule.feedback:
+        note += " The recommended quota is in the table below."
     return Part("Why this number", note, ("Step", "Value", "Of", "Why"), ("text", "amount", "text", "text"), rows)
 
 
 def _compared_part(table: QuotaTable) -> Part:
-    limit = words.limit_words(table.record)
+    limit = words.limit_words(table.record).rstrip(",")
     names = ["quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed"]
     kinds = ["amount", "text", "probability", "error", "probability"]
     headings = ["Legal quota a year", "", "Ever below limit", "± Monte Carlo", "Ever collapsed"]
@@ -103,9 +116,9 @@ def _compared_part(table: QuotaTable) -> Part:
         names.append("meets")
         kinds.append("probability")
         goal = "Back above limit" if aim.question == "recovery" else "Under the ceiling"
-        headings.append(f"{goal} in {aim.year} years")
+        headings.append(f"{goal} in {words.years(aim.year)}")
     rows = tuple(tuple(r[n] for n in names) for _, r in table.compared.iterrows())
-    note = f"Chances within {table.horizon} years under the same quota every year; the limit is {limit}."
+    note = f"Chances within {words.years(table.horizon)} under the same quota every year; the limit is {limit}."
     return Part("Other quotas", note, tuple(headings), tuple(kinds), rows)
 
 

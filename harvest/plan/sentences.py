@@ -2,90 +2,142 @@
 
 from __future__ import annotations
 
-from harvest.futures.recommend import Recommendation
+from harvest.futures.recommend import Criterion, Recommendation
 from harvest.plan import words
+from harvest.plan.rows import least_risk
 from harvest.plan.table import QuotaTable
 from harvest.record.model import Record
 
 
 def headline(table: QuotaTable) -> str:
-    """The finding in one sentence."""
-    record, advice = table.record, table.recommendation
-    what, quota = words.kind(record), words.number(table.first_quota, record.unit)
-    year = table.rates.first_year
+    """The finding in one sentence; a quota that breaks a bound is never told without saying so."""
+    what, quota = words.kind(table.record), words.number(table.first_quota, table.record.unit)
     if table.rule.feedback:
-        return f"The rule gives a legal quota of {quota} {what} in {year}."
-    stated = table.rule.settings[0] != advice.quota
-    if stated:
-        return f"A legal quota of {quota} {what} a year, as asked."
+        return _rule_headline(table, f"{quota} {what}")
+    if not table.is_recommended:
+        if table.recommendation.criterion.question == "reduction" and not table.recommendation.qualifies:
+            most = words.number(table.recommendation.quota, table.record.unit)
+            return f"No cull examined (up to {most} {what} a year) gets under the ceiling in time."
+        return f"A legal quota of {quota} {what} a year, as asked{_failing(table)}."
+    return _recommended_headline(table, f"{quota} {what}")
+
+
+def _failing(table: QuotaTable) -> str:
+    """What to add where the rule's risk is above the tolerance."""
+    p, _ = table.rule_risk
+    if p <= table.tolerance:
+        return ""
+    return f", but its risk of {words.probability(p)} is above your tolerance of {words.percent(table.tolerance)}"
+
+
+def _rule_headline(table: QuotaTable, quota: str) -> str:
+    year = table.rates.first_year
+    if table.awaits_count:
+        told = f"The quota of {year} follows from the count of {year - table.record.lag}, by the lookup card"
+        return told + _failing(table) + "."
+    return f"The rule gives a legal quota of {quota} in {year}{_failing(table)}."
+
+
+def _recommended_headline(table: QuotaTable, quota: str) -> str:
+    advice, what = table.recommendation, words.kind(table.record)
     if advice.criterion.question == "reduction":
-        if advice.qualifies:
-            return f"Take at least {quota} {what} a year to get under the ceiling in time."
-        return f"No cull examined (up to {quota} {what} a year) gets under the ceiling in time."
-    if not advice.qualifies or advice.quota == 0.0:
-        return f"Close the season: no quota of {what} is within what you accept."
-    at_least = " (the largest examined; more may qualify)" if advice.at_edge else ""
-    return f"Take at most {quota} {what} a year{at_least}."
+        told = f"Take at least {quota} a year to get under the ceiling in time"
+        soon, _ = table.rule_chance("ever_below_limit", advice.criterion.year)
+        if soon > table.tolerance:
+            told += (
+                f", but that endangers the lower limit: {words.probability(soon)}, above your tolerance of "
+                f"{words.percent(table.tolerance)}"
+            )
+        return told + "."
+    if advice.qualifies and advice.quota > 0.0:
+        at_least = " (the largest examined; more may qualify)" if advice.at_edge else ""
+        span = f" for {words.years(table.horizon)}" if table.horizon < 5 else ""
+        return f"Take at most {quota} a year{span}{at_least}."
+    if advice.qualifies:
+        one = "one animal" if table.record.unit == "animals" else f"the least printable amount of {what}"
+        return f"Close the season: what you accept allows less than {one} a year."
+    if advice.further_runs or least_risk(table.curve, table.horizon) > 0.0:
+        return "No take does not meet what you accept either, and risk falls as more is taken: look at the rates first."
+    return f"Close the season: no quota of {what}, and not even closure, meets what you accept."
 
 
-def _aim_words(record: Record, advice: Recommendation) -> str:
+def _event_words(record: Record, aim: Criterion) -> str:
     """The criterion's event, as "the chance of …"."""
-    aim = advice.criterion
+    span = words.years(aim.year)
     if aim.question == "limit":
-        return f"ever falling below {words.limit_words(record)} in {aim.year} years"
+        return f"{_below_words(record)} in {span}"
     if aim.question == "recovery":
-        return f"being back above {words.limit_words(record)} within {aim.year} years"
+        return f"being back above {words.limit_words(record)} within {span}"
     stated = record.objectives.ceiling
     ceiling = words.level(record, stated) if stated is not None else "the ceiling"
-    return f"being under {ceiling} within {aim.year} years"
+    return f"being under {ceiling} within {span}"
+
+
+def _below_words(record: Record) -> str:
+    return f"ever being below {words.limit_words(record)}"
+
+
+def _asked_words(aim: Criterion) -> str:
+    if aim.assumed:
+        return f"the record states no aim, so at least {words.percent(aim.bound)} is assumed"
+    if aim.at_least:
+        return f"you ask for at least {words.percent(aim.bound)}"
+    return f"your tolerance is {words.percent(aim.bound)}"
 
 
 def findings(table: QuotaTable) -> list[str]:
     """The sentences under the headline: the risk, the comparison with no take and the present quota."""
-    record, advice = table.record, table.recommendation
-    aim = advice.criterion
-    event = _aim_words(record, advice)
-    asked = (
-        f"you ask for at least {words.percent(aim.bound)}"
-        if aim.at_least
-        else (f"your tolerance is {words.percent(aim.bound)}")
-    )
-    quota = words.number(advice.quota, record.unit)
     told = []
-    if table.rule.feedback or table.rule.settings[0] != advice.quota:
-        p, se = table.rule_risk
-        against = "within" if p <= record.objectives.tolerance else "above"
-        under = (
-            "Under the rule" if table.rule.feedback else f"With {words.number(table.first_quota, record.unit)} a year"
-        )
-        told.append(
-            f"{under} the chance of ever falling below {words.limit_words(record)} in {table.horizon} years "
-            f"is {words.probability(p)} ({words.error(se)} Monte Carlo), {against} your tolerance of "
-            f"{words.percent(record.objectives.tolerance)}."
-        )
-        told.append(f"For comparison, the recommended constant legal quota is {quota} a year.")
-    told.append(
-        f"With {quota} a year the chance of {event} is {words.probability(advice.probability)} "
-        f"({words.error(advice.se)} Monte Carlo); {asked}."
-    )
-    if not advice.qualifies:
-        way = "short" if aim.at_least else "above it"
-        told.append(
-            f"That misses by {words.percent(advice.miss)}"
-            + (": the best of the quotas examined." if aim.question == "reduction" else f" {way} even without a take.")
-        )
-    compared = [f"{words.probability(advice.zero[1])} without a take"]
-    if advice.present is not None:
-        present = words.number(advice.present[0], record.unit)
-        compared.append(f"{words.probability(advice.present[1])} with the present quota of {present}")
-    told.append(f"That chance is {' and '.join(compared)}.")
-    if aim.question != "limit":
+    if not table.is_recommended:
+        told += _rule_sentences(table)
+    told += _advice_sentences(table)
+    if table.recommendation.criterion.question != "limit" and table.is_recommended:
         told.append(_limit_sentence(table))
-    for low, high in advice.further_runs:
+    if table.record.objectives.target is not None:
+        told.append(_target_sentence(table))
+    return told + _warnings(table)
+
+
+def _rule_sentences(table: QuotaTable) -> list[str]:
+    """What the rule in force does, where it is not the recommended quota."""
+    record, aim = table.record, table.recommendation.criterion
+    p, se = table.rule_risk
+    against = "within" if p <= table.tolerance else "above"
+    quota = words.number(table.first_quota, record.unit)
+    under = "Under the rule" if table.rule.feedback else f"With {quota} a year"
+    told = [
+        f"{under} the chance of {_below_words(record)} in {words.years(table.horizon)} is {words.probability(p)} "
+        f"({words.error(se)} Monte Carlo), {against} your tolerance of {words.percent(table.tolerance)}."
+    ]
+    if aim.question != "limit":
+        chance, se = table.rule_chance(aim.event, aim.year)
         told.append(
-            f"Quotas from {words.number(low, record.unit)} to {words.number(high, record.unit)} would qualify as "
-            "well; a risk that falls as more is taken calls for a second look at the rates."
+            f"{under} the chance of {_event_words(record, aim)} is {words.probability(chance)} "
+            f"({words.error(se)}); {_asked_words(aim)}."
         )
+    return told
+
+
+def _advice_sentences(table: QuotaTable) -> list[str]:
+    """The recommended constant quota, no take, and the present quota."""
+    record, advice = table.record, table.recommendation
+    aim, quota = advice.criterion, words.number(advice.quota, record.unit)
+    start = f"With {quota} a year" if table.is_recommended else f"For comparison: with a constant {quota} a year"
+    if advice.quota == 0.0:
+        start = "Without a take" if table.is_recommended else "For comparison: without a take"
+    told = [
+        f"{start} the chance of {_event_words(record, aim)} is {words.probability(advice.probability)} "
+        f"({words.error(advice.se)} Monte Carlo); {_asked_words(aim)}."
+    ]
+    if not advice.qualifies:
+        side = "below what is asked" if aim.at_least else "above the tolerance"
+        told.append(f"That is {100.0 * advice.miss:.2g} percentage points {side}.")
+    others = [] if advice.quota == 0.0 else [f"{words.probability(advice.zero[1])} without a take"]
+    if advice.present is not None and advice.present[0] not in (0.0, advice.quota):
+        present = words.number(advice.present[0], record.unit)
+        others.append(f"{words.probability(advice.present[1])} with the present quota of {present}")
+    if others:
+        told.append(f"That chance is {' and '.join(others)}.")
     return told
 
 
@@ -94,12 +146,48 @@ def _limit_sentence(table: QuotaTable) -> str:
     record, advice = table.record, table.recommendation
     year = advice.criterion.year
     soon, _ = table.curve.at("ever_below_limit", advice.quota, year)
-    later, later_se = advice.limit_risk
-    told = (
-        f"The chance of ever falling below {words.limit_words(record)} is {words.probability(soon)} in those "
-        f"{year} years, and {words.probability(later)} ({words.error(later_se)}) if the same quota goes on "
-        f"for {table.horizon}."
-    )
-    if advice.criterion.question == "reduction" and later > record.objectives.tolerance:
+    told = f"The chance of {_below_words(record)} is {words.probability(soon)} in those {words.years(year)}"
+    later, _ = advice.limit_risk
+    if table.horizon > year:
+        told += f", and {words.probability(later)} if the same quota goes on for {words.years(table.horizon)}"
+    told += f"; your tolerance is {words.percent(table.tolerance)}."
+    if advice.criterion.question == "reduction" and later > table.tolerance:
         told += " Stop this cull as soon as the count is under the ceiling: it is not a quota to keep."
+    return told
+
+
+def _target_sentence(table: QuotaTable) -> str:
+    """The chance of standing at the target at the end of the horizon."""
+    stated = table.record.objectives.target
+    target = words.level(table.record, stated) if stated is not None else "the target"
+    p, _ = table.rule_chance("at_target", table.horizon)
+    when = "after 1 year" if table.horizon == 1 else f"at the end of {words.years(table.horizon)}"
+    return f"The chance of being at or above the target of {target} {when} is {words.probability(p)}."
+
+
+def _warnings(table: QuotaTable) -> list[str]:
+    """What makes the answer doubtful: a growth curve that crashes, risk that falls as more is taken."""
+    record, advice, told = table.record, table.recommendation, []
+    crashed = table.future.ever_bounded
+    if crashed >= 0.01:
+        told.append(
+            f"Warning: in {words.probability(crashed)} of the futures the growth curve itself falls to zero, far above "
+            "the carrying capacity; part of the risk is the curve's and not the quota's."
+        )
+    told += _falling_risk(record, advice, least_risk(table.curve, table.horizon))
+    if table.horizon < record.objectives.plan_years:
+        told.append(f"Risk is counted over {words.years(table.horizon)} only, so the table ends there.")
+    return told
+
+
+def _falling_risk(record: Record, advice: Recommendation, best: float) -> list[str]:
+    told = []
+    if best > 0.0:
+        told.append(
+            f"Warning: the risk is least at a quota of {words.number(best, record.unit)}, not without a take; a risk "
+            "that falls as more is taken calls for a second look at the growth rate and the shape."
+        )
+    for low, high in advice.further_runs:
+        low_text, high_text = words.number(low, record.unit), words.number(high, record.unit)
+        told.append(f"Quotas from {low_text} to {high_text} would meet what you accept, and are not recommended.")
     return told

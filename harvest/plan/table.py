@@ -3,21 +3,30 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, field
 
-import numpy as np
 import pandas as pd
 
 from harvest import __version__
 from harvest.errors import SettingsError
-from harvest.futures.engine import Prepared, prepare, workers
+from harvest.futures.engine import Progress, counts_ahead, prepare, workers
+from harvest.futures.find import check_resolution, find_prepared
 from harvest.futures.project import Future, project_prepared
-from harvest.futures.recommend import Recommendation, pick_question, recommend_quota
-from harvest.futures.risk import POINTS, RiskCurve, curve_years, highest_quota, trace_prepared
+from harvest.futures.recommend import (
+    Criterion,
+    Recommendation,
+    check_question,
+    criterion_of,
+    pick_question,
+    read_off,
+    recommend_quota,
+)
+from harvest.futures.risk import RiskCurve, curve_years
 from harvest.futures.rounding import round_down
 from harvest.futures.rules import Rule, fixed_quota, rule_of
+from harvest.kernels.codes import SIMULATED
 from harvest.plan.card import lookup_card
+from harvest.plan.rows import compare_quotas, plan_rows
 from harvest.plan.steps import quota_steps, rule_steps
 from harvest.rates import Rates
 from harvest.record.model import Record
@@ -33,27 +42,34 @@ class QuotaTable:
     Attributes
     ----------
     record, rates, rule
-        ``rule`` is the record's or the caller's; else the recommended quota every year.
+        ``rule`` is the record's or the caller's; else the recommended quota every year (where no cull gets
+        under a ceiling in time: the present quota, or none).
     recommendation : Recommendation
         The constant legal quota read off the risk curve (also where a rule with feedback is in force).
     curve : RiskCurve
+    without_losses : (float, bool) or None
+        The unrounded quota if every dead animal were a reported one, and whether there is one; None where
+        the rule in force is not the recommended quota.
     future : Future
         The rule over the horizon; the table's years are its first.
     rows : DataFrame
-        One row a plan year: ``quota_year``, ``quota`` (legal; rounded in the first year and under a fixed
-        quota, else the median), ``quota_low90``, ``quota_high90``, ``removals`` (expected total),
-        ``count_year``, ``abundance`` (median at that count), ``abundance_low90``, ``abundance_high90``,
-        ``below_limit``, ``ever_below_limit``, ``ever_collapsed``.
+        One row a plan year, none beyond the horizon or a reduction's aim: ``quota_year``, ``quota`` (legal,
+        rounded; under a rule with feedback the median, save a first year whose count is on record),
+        ``quota_low90``, ``quota_high90``, ``removals`` (expected total), ``count_year``, ``abundance`` (median
+        at that count), ``abundance_low90``, ``abundance_high90``, ``below_limit``, ``ever_below_limit``,
+        ``ever_collapsed``.
     card : DataFrame
         See :func:`harvest.plan.card.lookup_card`.
-    steps : DataFrame
-        See :mod:`harvest.plan.steps`.
     compared : DataFrame
-        Constant quotas side by side, zero and the present quota among them: ``quota``, ``what``,
-        ``ever_below_limit``, ``ever_below_limit_se``, ``ever_collapsed``, ``meets`` (the criterion's probability).
+        See :func:`harvest.plan.rows.compare_quotas`.
+    first_count : int
+        What the rule has in the first year: ``harvest.kernels.codes`` RECORDED, SIMULATED (not made yet) or
+        MISSING.
+    tolerance, horizon : float, int
+        As used.
     count_bias : float
         What the lookup card's counts are divided by.
-    horizon, seed, version
+    seed, version
     """
 
     record: Record
@@ -61,26 +77,49 @@ class QuotaTable:
     rule: Rule
     recommendation: Recommendation
     curve: RiskCurve
+    without_losses: tuple[float, bool] | None
     future: Future
     rows: pd.DataFrame
     card: pd.DataFrame
-    steps: pd.DataFrame
     compared: pd.DataFrame
-    count_bias: float
+    first_count: int
+    tolerance: float
     horizon: int
+    count_bias: float
     seed: int
     version: str = field(default=__version__)
 
     @property
     def first_quota(self) -> float:
-        """Legal quota of the first plan year, rounded."""
+        """Legal quota of the first plan year, rounded (a median where the rule's count is not made yet)."""
         return float(self.rows["quota"].iloc[0])
+
+    @property
+    def awaits_count(self) -> bool:
+        """Whether the first year's quota follows from a count that is not made yet."""
+        return self.rule.feedback and self.first_count == SIMULATED
+
+    @property
+    def is_recommended(self) -> bool:
+        """Whether the rule in force is the recommended constant quota."""
+        return not self.rule.feedback and self.rule.settings[0] == self.recommendation.quota
 
     @property
     def rule_risk(self) -> tuple[float, float]:
         """Chance of ever falling below the limit within the horizon under the rule, and its standard error."""
-        last = self.future.by_year.iloc[self.horizon - 1]
-        return float(last["ever_below_limit"]), float(last["ever_below_limit_se"])
+        return self.rule_chance("ever_below_limit", self.horizon)
+
+    def rule_chance(self, event: str, year: int) -> tuple[float, float]:
+        """Probability of an event by the year-th quota year under the rule, and its standard error."""
+        row = self.future.by_year.iloc[year - 1]
+        return float(row[event]), float(row[f"{event}_se"])
+
+    @property
+    def steps(self) -> pd.DataFrame:
+        """Why this number; see :mod:`harvest.plan.steps`."""
+        if self.without_losses is not None:
+            return quota_steps(self.record, self.rates, self.recommendation, *self.without_losses)
+        return rule_steps(self.record, self.rates, self.rule, self.first_quota, self.first_count)
 
 
 def check_plan_years(years: int) -> None:
@@ -89,71 +128,37 @@ def check_plan_years(years: int) -> None:
         raise SettingsError(f"{years} plan years are not allowed: give a whole number from 1 to 10")
 
 
-def _trace(
-    prepared: Prepared,
-    quotas: np.ndarray,
-    years: int,
-    pool: ThreadPoolExecutor,
-    seed: int,
-    report: Report | None,
-    losses: bool,
-) -> RiskCurve:
-    label = "risk against quota" if losses else "the same without losses"
-
-    def progress(done: int, total: int) -> None:
-        if report:
-            report(label, done, total)
-
-    return trace_prepared(prepared, quotas, years, pool, seed=seed, losses=losses, progress=progress)
+def check_horizon(years: int) -> None:
+    """Horizon: 1 to 200 quota years."""
+    if not 1 <= years <= 200:
+        raise SettingsError(f"a horizon of {years} years is not allowed: give a whole number from 1 to 200")
 
 
-def _rows(future: Future, rule: Rule, first: float, plan_years: int, unit: str) -> pd.DataFrame:
-    """The table's rows from the projection's years, quotas rounded down."""
-    years = future.by_year.head(plan_years)
-    rows = pd.DataFrame(
-        {
-            "quota_year": years["quota_year"],
-            "quota": years["quota_median"],
-            "quota_low90": years["quota_low90"],
-            "quota_high90": years["quota_high90"],
-            "removals": years["removals_mean"],
-            "count_year": years["count_year"],
-            "abundance": years["abundance_median"],
-            "abundance_low90": years["abundance_low90"],
-            "abundance_high90": years["abundance_high90"],
-            "below_limit": years["below_limit"],
-            "ever_below_limit": years["ever_below_limit"],
-            "ever_collapsed": years["ever_collapsed"],
-        }
-    ).reset_index(drop=True)
-    columns = ["quota", "quota_low90", "quota_high90"]
-    if rule.feedback:
-        rows[columns] = rows[columns].map(lambda quota: round_down(float(quota), unit))
-        rows.loc[0, columns] = first
-    else:
-        rows[columns] = first
-    return rows
+def check_printable(rule: Rule, unit: str) -> None:
+    """A fixed quota is one that can be printed: whole animals, three figures of tonnes."""
+    if not rule.feedback and round_down(rule.settings[0], unit) != rule.settings[0]:
+        what = "whole animals" if unit == "animals" else "three significant figures"
+        raise SettingsError(
+            f"a quota of {rule.settings[0]:.12g} cannot be printed: give {what}, "
+            f"such as {round_down(rule.settings[0], unit):.12g}"
+        )
 
 
-def _compared(record: Record, curve: RiskCurve, advice: Recommendation, horizon: int) -> pd.DataFrame:
-    """A few constant quotas side by side, from the stored curve: zero and the present quota always."""
-    named: dict[float, str] = {0.0: "no take"}
-    if record.present_quota is not None:
-        named[record.present_quota] = "present quota"
-    if advice.quota > 0.0:
-        named[advice.quota] = "recommended" if advice.quota not in named else named[advice.quota] + ", recommended"
-    span = 1.6 * max([*named, 1e-9])
-    top = min(float(curve.quotas[-1]), span)
-    extra = [round_down(top * i / 8, record.unit) for i in range(1, 9)]
-    quotas = sorted({*named, *(q for q in extra if all(abs(q - n) > top / 24 for n in named))})
-    rows = []
-    for quota in quotas:
-        p, se = curve.at("ever_below_limit", quota, horizon)
-        collapsed, _ = curve.at("ever_collapsed", quota, horizon)
-        meets, _ = curve.at(advice.criterion.event, quota, advice.criterion.year)
-        rows.append((quota, named.get(quota, ""), p, se, collapsed, meets))
-    columns = ["quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed", "meets"]
-    return pd.DataFrame(rows, columns=columns)
+def _default_rule(record: Record, advice: Recommendation) -> Rule:
+    """The recommended quota; where no cull gets under the ceiling in time, the present quota or none."""
+    if advice.criterion.question == "reduction" and not advice.qualifies:
+        return fixed_quota(record.present_quota or 0.0)
+    return fixed_quota(advice.quota)
+
+
+def _shown_years(criterion: Criterion, rule: Rule, plan_years: int, horizon: int) -> int:
+    """Years of the table: none beyond the horizon, nor a constant cull beyond the year it must have worked by."""
+    cull = criterion.question == "reduction" and not rule.feedback
+    return min(plan_years, horizon, criterion.year if cull else plan_years)
+
+
+def _telling(report: Report | None, label: str) -> Progress | None:
+    return None if report is None else lambda done, total: report(label, done, total)
 
 
 def make_quota_table(
@@ -186,54 +191,50 @@ def make_quota_table(
     Raises
     ------
     SettingsError
-        A setting out of range.
+        A setting out of range, or a tolerance too small for the number of draws.
     """
-    plan_years = record.objectives.plan_years if plan_years is None else plan_years
+    aims = record.objectives
+    plan_years = aims.plan_years if plan_years is None else plan_years
+    horizon = aims.horizon if horizon is None else horizon
     check_plan_years(plan_years)
-    horizon = record.objectives.horizon if horizon is None else horizon
-    years = max(curve_years(record), horizon)
-    question = question or pick_question(record, rates)
-    seed = rates.seed if seed is None else seed
+    check_horizon(horizon)
     if rule is None and record.rule is not None:
         rule = rule_of(record.rule)
-    present = [] if record.present_quota is None else [record.present_quota]
+    if rule is not None:
+        check_printable(rule, record.unit)
+    question = question or pick_question(record, rates)
+    check_question(record, rates, question)
+    criterion = criterion_of(record, question, tolerance=tolerance, horizon=horizon)
+    check_resolution(criterion, len(rates))
+    seed, years = rates.seed if seed is None else seed, max(curve_years(record), horizon)
     with workers(threads) as pool:
         prepared = prepare(record, rates, futures_per_draw=futures_per_draw)
-        lossless = prepare(record, rates, futures_per_draw=futures_per_draw, losses=False)
-        top = highest_quota(record, rates)
-        for _ in range(6):
-            quotas = np.unique([0.0, *present, *np.linspace(0.0, top, POINTS)])
-            curve = _trace(prepared, quotas, years, pool, seed, report, losses=True)
-            advice = recommend_quota(record, curve, question, tolerance=tolerance, horizon=horizon)
-            if not advice.at_edge:
-                break
-            top *= 2.0
-        without_losses = _trace(lossless, quotas, years, pool, seed, report, losses=False)
-        rule = fixed_quota(advice.quota) if rule is None else rule
-        future = project_prepared(
-            prepared,
-            rule,
-            max(horizon, plan_years),
-            pool,
-            seed=seed,
-            progress=(lambda done, total: report("the plan's years", done, total)) if report else None,
-        )
-    first = round_down(float(future.by_year["quota_median"].iloc[0]), record.unit)
-    feedback = rule.feedback
+        telling = _telling(report, "risk against quota")
+        curve = find_prepared(prepared, criterion, years, pool, seed=seed, progress=telling)
+        advice = recommend_quota(record, curve, question, tolerance=tolerance, horizon=horizon)
+        without = None
+        rule = _default_rule(record, advice) if rule is None else rule
+        if not rule.feedback and rule.settings[0] == advice.quota:
+            lossless = prepare(record, rates, futures_per_draw=futures_per_draw, losses=False)
+            telling = _telling(report, "the same without losses")
+            bare = find_prepared(lossless, criterion, years, pool, seed=seed, losses=False, progress=telling)
+            without = read_off(bare, criterion)[:2]
+        telling = _telling(report, "the plan's years")
+        future = project_prepared(prepared, rule, years, pool, seed=seed, progress=telling)
     return QuotaTable(
         record=record,
         rates=rates,
         rule=rule,
         recommendation=advice,
         curve=curve,
+        without_losses=without,
         future=future,
-        rows=_rows(future, rule, first if feedback else rule.settings[0], plan_years, record.unit),
-        card=lookup_card(record, rates, rule, prepared.bias),
-        steps=rule_steps(record, rates, rule, first)
-        if feedback
-        else quota_steps(record, rates, advice, without_losses),
-        compared=_compared(record, curve, advice, horizon),
-        count_bias=prepared.bias,
+        rows=plan_rows(future, rule, _shown_years(criterion, rule, plan_years, horizon), record.unit),
+        card=lookup_card(record, rates, rule, criterion.question, prepared.bias),
+        compared=compare_quotas(record, curve, advice, horizon),
+        first_count=int(counts_ahead(record, rates, 1)[0][0]),
+        tolerance=aims.tolerance if tolerance is None else tolerance,
         horizon=horizon,
+        count_bias=prepared.bias,
         seed=seed,
     )

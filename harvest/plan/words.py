@@ -17,7 +17,7 @@ def number(value: float, unit: str = "animals") -> str:
     if math.isinf(value):
         return "never"
     if unit == "animals" or value == 0.0:
-        return f"{value:,.0f}"
+        return f"{round(value) + 0:,}"
     digits = max(0, 2 - math.floor(math.log10(abs(value)) + 1e-9))
     return f"{value:,.{digits}f}"
 
@@ -90,14 +90,20 @@ def limit_words(record: Record) -> str:
     """The lower limit in words, or what stands in for it."""
     if record.objectives.limit is not None:
         return level(record, record.objectives.limit)
-    return f"the collapse level ({collapse_words(record)}), since the record states no limit"
+    return f"the collapse level, {collapse_words(record)} (no limit is stated),"
 
 
 def collapse_words(record: Record) -> str:
     """The collapse level in words."""
     if record.objectives.collapse is not None:
         return level(record, record.objectives.collapse)
-    return "10% of the carrying capacity, or the Allee threshold where that is higher"
+    higher = ", or the Allee threshold where that is higher" if any(c.name == "allee" for c in record.curves) else ""
+    return f"10% of the carrying capacity{higher}"
+
+
+def years(n: int) -> str:
+    """A number of years: "1 year", "20 years"."""
+    return f"{n} year{'' if n == 1 else 's'}"
 
 
 def years_words(first: int, years: int) -> str:

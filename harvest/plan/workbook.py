@@ -27,7 +27,7 @@ _KIND_FORMATS = {
     "probability": '[<0.001]"<0.1%";[>0.999]">99.9%";0.0%',
     "error": "0.00%",
     "share": "0.0%",
-    "index": "General",
+    "index": "General",  # as entered
 }
 _WIDTHS = {"share": 11.0, "index": 13.0, "text": 26.0, "year": 9.0, "amount": 13.0, "probability": 13.0, "error": 11.0}
 
@@ -166,12 +166,16 @@ def _history_sheet(book: Workbook, table: QuotaTable) -> None:
     record = table.record
     hidden = is_private(record, "history.removals")
     removals: tuple[Value, ...] = (words.PRIVATE,) * len(record.history.years) if hidden else record.history.removals
-    headings, kinds = ["Year", "Reported removals"], ["year", "amount"]
+    headings, kinds = ["Year", "Reported removals"], ["year", "index"]
     columns: list[tuple[Value, ...]] = [tuple(map(float, record.history.years)), removals]
     for survey in () if is_private(record, "survey") else record.surveys:
         headings += [survey.name, "CV"]
-        kinds += ["amount" if survey.kind == "absolute" else "index", "share"]
+        kinds += ["index", "share"]
         columns += [survey.values, survey.cvs]
+    if any(record.history.notes) and not is_private(record, "history.note"):
+        headings.append("Note")
+        kinds.append("text")
+        columns.append(record.history.notes)
     rows = tuple(tuple("" if v is None else v for v in row) for row in zip(*columns, strict=True))
     note = f"As entered, in {words.kind(record)}; an index in its own unit."
     part = Part("History", note, tuple(headings), tuple(kinds), rows)

@@ -7,6 +7,7 @@ draws of the others as they were.
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pandas as pd
@@ -15,6 +16,7 @@ from scipy import special
 from harvest.errors import RatesError, SettingsError
 from harvest.population import BY_NAME
 from harvest.rates.approach import approach
+from harvest.rates.cautions import cautions
 from harvest.rates.distributions import DOMAINS, Interval, outside, quantile
 from harvest.rates.streams import stream
 from harvest.rates.table import Rates
@@ -42,12 +44,17 @@ def curve_counts(weights: np.ndarray, draws: int) -> np.ndarray:
     return counts
 
 
+def _merged(name: str) -> str:
+    """The growth rate goes by two names, one a curve states; they share one draw and its correlations."""
+    return "max_growth" if name == "growth_rate" else name
+
+
 def correlated_normals(record: Record, seed: int, draws: int) -> dict[str, np.ndarray]:
     """Standard normals of each correlated rate, shape (draws,), by Spearman's ρ through a Gaussian copula."""
-    size = len(CORRELATED)
-    pearson = np.eye(size)
+    names = [name for name in CORRELATED if name == _merged(name)]
+    pearson = np.eye(len(names))
     for c in record.correlations:
-        i, j = CORRELATED.index(c.first), CORRELATED.index(c.second)
+        i, j = names.index(_merged(c.first)), names.index(_merged(c.second))
         pearson[i, j] = pearson[j, i] = 2.0 * math.sin(math.pi * c.value / 6.0)
     try:
         factor = np.linalg.cholesky(pearson)
@@ -57,8 +64,8 @@ def correlated_normals(record: Record, seed: int, draws: int) -> dict[str, np.nd
             f"the stated correlations contradict each other (smallest eigenvalue {smallest:.3g}, must be "
             "above 0): bring some of them closer to 0"
         ) from error
-    z = factor @ np.stack([stream(seed, name).standard_normal(draws) for name in CORRELATED])
-    return dict(zip(CORRELATED, z, strict=True))
+    z = dict(zip(names, factor @ np.stack([stream(seed, n).standard_normal(draws) for n in names]), strict=True))
+    return {name: z[_merged(name)] for name in CORRELATED}
 
 
 def _domain(name: str, curve: str) -> Interval:
@@ -161,4 +168,5 @@ def draw_rates(record: Record, seed: int = 0, draws: int = DRAWS) -> Rates:
     for name in ("wounding", "unreported", "other"):
         u = special.ndtr(stream(seed, name).standard_normal(draws))
         table[name] = quantile(getattr(record.losses, name), u, DOMAINS[name])
-    return approach(record, table, seed, tuple(dict.fromkeys(notes)))
+    rates = approach(record, table, seed, tuple(dict.fromkeys(notes)))
+    return replace(rates, notes=(*rates.notes, *cautions(record, rates)))

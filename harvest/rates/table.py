@@ -10,7 +10,7 @@ import pandas as pd
 from harvest import __version__
 from harvest.errors import RatesError
 from harvest.population import BY_NAME, by_draw
-from harvest.record.model import Level
+from harvest.record.model import Level, Objectives
 
 #: The columns of the table, with their units.
 COLUMNS = {
@@ -107,6 +107,10 @@ class Rates:
         """Total removals that a legal take brings, shape (draws,) or as broadcast."""
         return np.asarray(legal_take * self.factor + self.column("other"))
 
+    def legal_take(self, removals: np.ndarray | float) -> np.ndarray:
+        """The legal take that brings these total removals, at least 0; shape (draws,) or as broadcast."""
+        return np.asarray(np.maximum(0.0, (removals - self.column("other")) / self.factor))
+
     def closed_form(self, quantity: str) -> np.ndarray:
         """``msy``, ``peak`` (both need r, K, shape) or ``greatest_growth`` (r, shape) of each draw."""
         r, k, s = self.column("r"), self.column("K"), self.column("shape")
@@ -117,6 +121,11 @@ class Rates:
         if level is None:
             return np.full(len(self), absent)
         return level.value * self.column("K") if level.of_capacity else np.full(len(self), level.value)
+
+    def limit_level(self, objectives: Objectives) -> np.ndarray:
+        """The lower limit draw by draw; the collapse level stands in where none is stated."""
+        limit = self.level(objectives.limit, np.nan)
+        return np.where(np.isnan(limit), self.collapse_level(objectives.collapse), limit)
 
     def collapse_level(self, level: Level | None) -> np.ndarray:
         """The collapse level: the user's, else 10% of K (Worm et al. 2009) or a higher Allee threshold."""

@@ -75,25 +75,40 @@ def _report_missing(where: str, key: str, report: Report) -> None:
     report.error(where, f"no {key}", f"a curve needs {key}", f"Add {key} to [rates], or to this curve alone{hint}.")
 
 
+def merged_rate(name: str) -> str:
+    """The growth rate goes by two names, one a curve states; for correlations they are the same rate."""
+    return "max_growth" if name in _GROWTH else name
+
+
 def check_correlations(values: Values, report: Report) -> None:
     """Correlations name two rates of the record, each pair once, and make a possible matrix together."""
     stated = set(values["rates"]).union(*values["curve"]) & set(CORRELATED)
+    given: set[frozenset[str]] = set()
     pairs: dict[frozenset[str], float] = {}
     sound = True
     for number, correlation in enumerate(values["correlation"], start=1):
         where = place(f"correlation {number}", "between")
         names, value = get(correlation, "between"), get(correlation, "value")
-        if names is None:
+        if names is None or not _check_pair(names, stated, where, report):
             sound = False
             continue
-        if not _check_pair(names, stated, where, report):
-            sound = False
-            continue
-        if frozenset(names) in pairs:
+        if frozenset(names) in given:
             sound = False
             report.error(where, listed(names), "each pair of rates stands once", "Take out one of the two.")
-        pairs[frozenset(names)] = value if value is not None else 0.0
-        sound = sound and value is not None
+            continue
+        given.add(frozenset(names))
+        if value is None:
+            sound = False
+            continue
+        merged = frozenset(map(merged_rate, names))
+        if pairs.setdefault(merged, value) != value:
+            sound = False
+            report.error(
+                where,
+                f"{listed(names)} = {value:g}, elsewhere {pairs[merged]:g}",
+                "growth_rate and max_growth are one rate under two names, so both have the same correlations",
+                "Give both the same value, or take out one of the two.",
+            )
     if sound and pairs and not _is_possible(pairs):
         report.error(
             "correlation",
@@ -108,6 +123,10 @@ def _check_pair(names: Sequence[str], stated: set[str], where: str, report: Repo
         report.error(
             where, listed(names) or "an empty list", "a correlation is between two different rates", "Name two rates."
         )
+        return False
+    if set(names) == set(_GROWTH):
+        cure = "Take the correlation out: wherever both are stated, each curve by one of them, they share their draw."
+        report.error(where, listed(names), "growth_rate and max_growth are one rate under two names", cure)
         return False
     sound = True
     for name in names:

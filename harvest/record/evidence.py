@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from typing import Any
 
+from harvest.record.counts import latest_absolute_count
 from harvest.record.history import Table
-from harvest.record.model import Record, Survey
+from harvest.record.model import Record
 from harvest.record.reporting import Report
 from harvest.record.schema import REMOVALS
 from harvest.record.tables import Values, get
@@ -130,7 +131,7 @@ def moment(survey: Values, top: Values) -> Any:
 
 def warn_of_abundance(record: Record, report_toml: Report, report_history: Report) -> None:
     """Warn where this year's abundance cannot be had: no usable absolute count, or removals missing since."""
-    latest = find_latest_count(record)
+    latest = latest_absolute_count(record)
     if latest is None:
         report_toml.warning(
             "survey",
@@ -139,8 +140,8 @@ def warn_of_abundance(record: Record, report_toml: Report, report_history: Repor
             "Add one, or no quota can be worked out.",
         )
         return
-    year, survey = latest
-    first = year + 1 if survey.when == "after" else year
+    year = record.history.years[latest.row]
+    first = year + 1 if latest.survey.when == "after" else year
     taken = dict(zip(record.history.years, record.history.removals, strict=True))
     missing = [y for y in range(first, record.quota_year) if taken.get(y) is None]
     if missing:
@@ -151,18 +152,3 @@ def warn_of_abundance(record: Record, report_toml: Report, report_history: Repor
             "known before a quota can be worked out",
             "Write the removals of these years (an estimate, where nothing else is known).",
         )
-
-
-def find_latest_count(record: Record) -> tuple[int, Survey] | None:
-    """The year and the survey of the latest absolute count above 0; of several, the one with the least CV."""
-    found = [
-        (year, -(cv or 0.0), survey)
-        for survey in record.surveys
-        if survey.kind == "absolute"
-        for year, count, cv in zip(record.history.years, survey.values, survey.cvs, strict=True)
-        if count and year <= record.quota_year - (survey.when == "after")
-    ]
-    if not found:
-        return None
-    year, _, survey = max(found, key=lambda candidate: candidate[:2])
-    return year, survey

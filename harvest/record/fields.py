@@ -8,7 +8,16 @@ from __future__ import annotations
 
 from typing import Any
 
-from harvest.record.model import CURVES, FORMAT, NOISE_CONVENTIONS, RULES, SEASONS, SURVEY_KINDS, UNITS
+from harvest.record.model import (
+    CURVES,
+    FORMAT,
+    NOISE_CONVENTIONS,
+    RULES,
+    SEASONS,
+    SURVEY_KINDS,
+    UNITS,
+    WITHOUT_COUNT,
+)
 from harvest.record.schema import (
     ABOVE_ZERO,
     CV_RANGE,
@@ -52,6 +61,8 @@ SECTIONS: tuple[Section, ...] = (
 _YEARS = "years"
 _PER_YEAR = "per year"
 _OWN_UNIT = "the record's unit"
+_KEPT = "kept for the fit to the history, not used yet"
+_OR_SHARE = ", or a fraction of carrying capacity such as { of_capacity = 0.3 }"
 _SHAPED = ("theta-logistic", "gompertz", "allee")
 _MAX_GROWTH = "Greatest growth per head per year (Fox, Gompertz: growth at low abundance)"
 
@@ -148,18 +159,18 @@ FIELDS: tuple[Field, ...] = (
     Field("correlation", "value", "number", "Spearman rank correlation.", True, within=INSIDE_MINUS_1_1,
           example=-0.3),
 
-    Field("life", "age_first_breeding", "number", "Age at first breeding.", within=Interval(0, 200),
-          unit=_YEARS, example=2),
-    Field("life", "adult_survival", "proportion", "Survival of adults without removals.", within=SHARE,
-          unit=_PER_YEAR, example=0.9),
+    Field("life", "age_first_breeding", "number", f"Age at first breeding; {_KEPT}.",
+          within=Interval(0, 200), unit=_YEARS, example=2),
+    Field("life", "adult_survival", "proportion", f"Survival of adults without removals; {_KEPT}.",
+          within=SHARE, unit=_PER_YEAR, example=0.9),
     Field("life", "body_mass", "number", "Mean body mass.", within=Interval(0, 1e6, low_open=True),
           unit="kg", example=80),
 
-    Field("objectives", "limit", "level", "Abundance below which the population must not fall.",
+    Field("objectives", "limit", "level", f"Abundance below which the population must not fall{_OR_SHARE}.",
           within=ABOVE_ZERO, unit=_OWN_UNIT, example=300, shown=True),
-    Field("objectives", "target", "level", "Abundance to aim for.", within=ABOVE_ZERO, unit=_OWN_UNIT,
-          example=600),
-    Field("objectives", "ceiling", "level", "Upper bound of abundance that a cull serves.",
+    Field("objectives", "target", "level", f"Abundance to aim for{_OR_SHARE}.", within=ABOVE_ZERO,
+          unit=_OWN_UNIT, example=600),
+    Field("objectives", "ceiling", "level", f"Upper bound of abundance that a cull serves{_OR_SHARE}.",
           within=ABOVE_ZERO, unit=_OWN_UNIT, example=1000),
     Field("objectives", "collapse", "level",
           "Abundance that counts as collapsed; left out, 10% of carrying capacity.", within=ABOVE_ZERO,
@@ -170,10 +181,10 @@ FIELDS: tuple[Field, ...] = (
           "Accepted chance of ever falling below the limit within the horizon.", default=0.05,
           within=INSIDE_0_1, example=0.05, shown=True),
     Field("objectives", "recovery", "years and chance",
-          "Be back above the limit within so many years with this chance.",
+          "Be back above the limit within so many years with this chance; needs limit.",
           example={"years": 10, "chance": 0.8}),
     Field("objectives", "reduction", "years and chance",
-          "Be below the ceiling within so many years with this chance.",
+          "Be below the ceiling within so many years with this chance; needs ceiling.",
           example={"years": 5, "chance": 0.8}),
     Field("objectives", "plan_years", "whole number", "Years that the quota table covers.", default=5,
           within=Interval(1, 10), unit=_YEARS, example=5),
@@ -202,8 +213,8 @@ FIELDS: tuple[Field, ...] = (
     Field("rule", "share", "proportion", "Share of the count to take.", within=SHARE,
           only_for=("fixed share", "ramp"), needed_for=("fixed share", "ramp"), example=0.1),
     Field("rule", "without_count", "proportion",
-          "Share of the last quota in a year without a count; left out, 0.8.", within=PROPORTION,
-          example=0.8),
+          f"Share of the last quota in a year without a count; left out, {WITHOUT_COUNT:g}.",
+          within=PROPORTION, example=WITHOUT_COUNT),
 
     Field("survey_plan", "cv", "CV",
           "Coefficient of variation of the counts to come; left out, that of the latest count.",

@@ -18,8 +18,8 @@ from harvest.record.reporting import Report, listed, nearest, show
 from harvest.record.schema import FIRST_YEAR, LAST_YEAR, MAX_NUMBER, NOTE, REMOVALS, YEAR
 from harvest.record.values import find_text_fault, judge_cv
 
-#: First characters that make a spreadsheet take a text for a formula.
-RISKY = "=+-@\t\n＝＋－＠"
+#: First characters that make a spreadsheet take a text for a formula; every file that the program writes heeds them.
+RISKY = "=+-@\t\r\n＝＋－＠"
 _GUARDED = re.compile(f"'+[{re.escape(RISKY)}]")
 _RISKY_START = re.compile(f"'*[{re.escape(RISKY)}]")
 _MOST_COLUMNS = 200

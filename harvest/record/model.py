@@ -9,7 +9,6 @@ from __future__ import annotations
 import hashlib
 import json
 from dataclasses import asdict, dataclass, field
-from typing import Any
 
 FORMAT = 1
 UNITS = ("animals", "tonnes")
@@ -22,6 +21,8 @@ NOISE_CONVENTIONS = ("mean one", "median one")
 CURVES = ("logistic", "theta-logistic", "fox", "gompertz", "allee")
 SURVEY_KINDS = ("absolute", "index")
 RULES = ("fixed quota", "fixed share", "escapement", "ramp")
+#: A rule's share of the last quota in a year without a count, unless stated.
+WITHOUT_COUNT = 0.8
 
 
 @dataclass(frozen=True)
@@ -249,7 +250,3 @@ class Record:
         """SHA-256 of the record's content (not of the files' bytes): hexadecimal, 64 digits."""
         text = json.dumps(asdict(self), sort_keys=True, ensure_ascii=False, separators=(",", ":"))
         return hashlib.sha256(text.encode()).hexdigest()
-
-    def plain(self) -> dict[str, Any]:
-        """The record as plain dictionaries and lists, private fields left in."""
-        return asdict(self)

@@ -116,10 +116,10 @@ def check_objectives(values: Values, report: Report) -> None:
                 f"{high} must not be below {low}",
                 "Correct one of the two: collapse, limit, target and ceiling rise in this order.",
             )
-    for aim, needs in (("recovery", ("limit", "target")), ("reduction", ("ceiling",))):
-        if aim in objectives and not any(level in objectives for level in needs):
-            cure = f"Add {needs[0]} = … to [objectives], or take {aim} out."
-            report.error(f"objectives.{aim}", "an aim without its level", f"{aim} needs {' or '.join(needs)}", cure)
+    for aim, level in (("recovery", "limit"), ("reduction", "ceiling")):
+        if aim in objectives and level not in objectives:
+            cure = f"Add {level} = … to [objectives], or take {aim} out."
+            report.error(f"objectives.{aim}", "an aim without its level", f"{aim} needs {level}", cure)
 
 
 def _is_above(first: Level | None, second: Level | None) -> bool:

@@ -23,6 +23,7 @@ from harvest.record.schema import HISTORY_FILE, MAX_RECORD_BYTES, RECORD_FILE
 from harvest.record.tables import parse_toml
 from harvest.record.values import FAULTY, check_value
 from harvest.record.write import record_to_files
+from harvest.writing import flush_folder, write_new
 
 if sys.platform != "win32":
     import fcntl
@@ -61,7 +62,7 @@ def save_record(record: Record, folder: str | os.PathLike[str]) -> None:
             if old is not None and old != name:
                 with suppress(OSError):  # the new record is whole by now; a left-over history does no harm
                     (place / old).unlink(missing_ok=True)
-                _flush_folder(place)
+                flush_folder(place)
     except (OSError, ValueError, RuntimeError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise SettingsError(
@@ -118,13 +119,7 @@ def _write_history(folder: Path, old: str | None, data: bytes) -> str:
     stem, suffix = HISTORY_FILE.rsplit(".", 1)
     names = chain([HISTORY_FILE], (f"{stem}-{number}.{suffix}" for number in count(2)))
     name = next(name for name in names if not os.path.lexists(folder / name))
-    try:
-        _write_new(folder / name, data)
-    except FileExistsError:  # somebody else was quicker: it is theirs
-        raise
-    except BaseException:
-        (folder / name).unlink(missing_ok=True)
-        raise
+    write_new(folder / name, data)  # where somebody else was quicker, it is theirs
     return name
 
 
@@ -139,33 +134,12 @@ def _replace_record(folder: Path, history: str, data: bytes) -> None:
     unfinished = folder / _UNFINISHED
     try:
         unfinished.unlink(missing_ok=True)  # of a process that was killed
-        _write_new(unfinished, data)
-        _flush_folder(folder)
+        write_new(unfinished, data)
+        flush_folder(folder)
         os.replace(unfinished, folder / RECORD_FILE)  # noqa: PTH105 (one named step, which the tests interrupt)
     except BaseException:
         unfinished.unlink(missing_ok=True)
         if _find_history(folder)[1] != history:
             (folder / history).unlink(missing_ok=True)
         raise
-    _flush_folder(folder)
-
-
-def _write_new(path: Path, data: bytes) -> None:
-    """Write a file that must not exist yet, down to the disk."""
-    handle = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0), 0o666)
-    with os.fdopen(handle, "wb") as stream:
-        stream.write(data)
-        stream.flush()
-        os.fsync(stream.fileno())
-
-
-def _flush_folder(folder: Path) -> None:
-    """Write the folder's list of names down to the disk, where the system can."""
-    if sys.platform == "win32":
-        return
-    with suppress(OSError):  # some network drives cannot
-        handle = os.open(folder, os.O_RDONLY)
-        try:
-            os.fsync(handle)
-        finally:
-            os.close(handle)
+    flush_folder(folder)

@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import os
-import shutil
 import textwrap
+from contextlib import suppress
 from pathlib import Path
 
 from harvest.errors import SettingsError
@@ -12,6 +12,7 @@ from harvest.record.fields import SECTIONS, field_at, fields_of
 from harvest.record.reporting import listed, nearest
 from harvest.record.schema import HISTORY_FILE, NOTE, RECORD_FILE, REMOVALS, YEAR, Field, Section
 from harvest.record.write import render_pair
+from harvest.writing import write_new, write_whole
 
 _WIDTH = 100
 _HEAD = """\
@@ -97,21 +98,42 @@ def make_record(folder: str | os.PathLike[str], demo: str | None = None) -> Path
             raise SettingsError(
                 f"{str(place)!r} is there already and not empty; nothing was changed. Give a new folder's name."
             )
+        files = _blank_files() if source is None else _files_of(source)
         place.mkdir(parents=True, exist_ok=True)
-        if source is None:
-            record_text, history_text = blank_record_files()
-            (place / HISTORY_FILE).write_text(history_text, encoding="utf-8", newline="\n")
-            (place / RECORD_FILE).write_text(record_text, encoding="utf-8", newline="\n")
-        else:
-            for path in sorted(source.iterdir()):
-                if path.is_file() and not path.name.startswith("."):
-                    shutil.copyfile(path, place / path.name)
+        _fill(place, files)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise SettingsError(
             f"a record cannot be made in {str(place)!r}: {reason}. Check the name and the right to write there."
         ) from error
     return place
+
+
+def _blank_files() -> dict[str, bytes]:
+    record_text, history_text = blank_record_files()
+    return {HISTORY_FILE: history_text.encode(), RECORD_FILE: record_text.encode()}
+
+
+def _files_of(source: Path) -> dict[str, bytes]:
+    """The content of a folder's files, but for hidden ones, by name."""
+    found = (path for path in sorted(source.iterdir()) if path.is_file() and not path.name.startswith("."))
+    return {path.name: path.read_bytes() for path in found}
+
+
+def _fill(place: Path, files: dict[str, bytes]) -> None:
+    """Write files into an empty folder, ``record.toml`` last and in one step: there is a whole record or none."""
+    written: list[Path] = []
+    try:
+        for name in (name for name in files if name != RECORD_FILE):
+            write_new(place / name, files[name])
+            written.append(place / name)
+        write_whole(place / RECORD_FILE, files[RECORD_FILE])
+    except BaseException:
+        if not os.path.lexists(place / RECORD_FILE):  # else the record is whole already
+            for path in written:
+                with suppress(OSError):
+                    path.unlink(missing_ok=True)
+        raise
 
 
 def demo_names() -> tuple[str, ...]:

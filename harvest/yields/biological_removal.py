@@ -10,8 +10,7 @@ import numpy as np
 from harvest.errors import SettingsError
 from harvest.kernels.growth import growth_array
 from harvest.rates import Rates
-from harvest.rates.approach import latest_usable_count
-from harvest.rates.distributions import DOMAINS, quantile
+from harvest.rates.approach import latest_usable_count, stated_bias
 from harvest.record.model import Record
 
 #: Standard normal value of the 20th percentile, as printed by Wade (1998).
@@ -62,12 +61,11 @@ def biological_removal(record: Record, rates: Rates) -> BiologicalRemoval:
     Where that growth is unbounded (Fox, Gompertz) it is the growth at the record's stated low abundance.
     """
     usable = latest_usable_count(record)
-    bias = float(quantile(usable.survey.bias, np.array([0.5]), DOMAINS["bias"])[0])
     growth = rates.closed_form("greatest_growth")
     low = record.low_abundance * rates.column("K")
     at_low = growth_array(rates.codes, low, rates.column("r"), rates.column("K"), rates.column("shape")) / low
     r_max = float(np.median(np.where(np.isinf(growth), at_low, growth)))
-    n_best = usable.count / bias
+    n_best = usable.count / stated_bias(usable.survey)
     n_min = minimum_abundance(n_best, usable.cv)
     factor = record.objectives.recovery_factor
     value = potential_biological_removal(n_min, r_max, factor)

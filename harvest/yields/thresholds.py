@@ -21,9 +21,12 @@ from harvest.yields.reference import (
     return_time,
     slope_at,
 )
+from harvest.yields.summary import present_take
 
 #: Times longer than this count as "never".
 MOST_YEARS = 500
+#: The largest quota that makes sense to ask about.
+MOST_QUOTA = 1e15
 
 
 @dataclass(frozen=True)
@@ -103,16 +106,17 @@ def crossing_years(record: Record, rates: Rates, quota: float, level: np.ndarray
 
 
 def find_thresholds(record: Record, rates: Rates, quota: float | None = None) -> Thresholds:
-    """Thresholds of a record under a constant legal quota (default: the present quota, else no take).
+    """Thresholds of a record under a constant legal quota (default: the present quota, else the latest removals).
 
     Raises
     ------
     SettingsError
-        A negative quota.
+        A quota out of range.
     """
-    quota = (record.present_quota or 0.0) if quota is None else float(quota)
-    if not (np.isfinite(quota) and quota >= 0.0):
-        raise SettingsError(f"quota {quota:g} is not allowed: give a number from 0")
+    if quota is None:
+        quota = record.present_quota if record.present_quota is not None else present_take(record) or 0.0
+    if not 0.0 <= quota <= MOST_QUOTA:
+        raise SettingsError(f"quota {quota:g} is not allowed: give a number from 0 to {MOST_QUOTA:g}")
     removals, msy = rates.total_removals(quota), rates.closed_form("msy")
     base_lower, base_upper = both_equilibria(rates, removals)
     lower, upper = at_count(record, base_lower, removals), at_count(record, base_upper, removals)
@@ -120,14 +124,13 @@ def find_thresholds(record: Record, rates: Rates, quota: float | None = None) ->
     beyond = removals > msy
     below = ~beyond & (counted < lower)
     collapse = rates.collapse_level(record.objectives.collapse)
-    limit = rates.level(record.objectives.limit, np.nan)
-    limit = np.where(np.isnan(limit), collapse, limit)
+    limit = rates.limit_level(record.objectives)
 
     def recovery(take: float) -> np.ndarray:
         years = crossing_years(record, rates, take, limit, falling=False)
         return np.where(counted < limit, years, 0.0)
 
-    fold_quota = np.maximum(0.0, (msy - rates.column("other")) / rates.factor)
+    fold_quota = rates.legal_take(msy)
     values = {
         "removals": removals,
         "fold": msy,

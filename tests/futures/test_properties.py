@@ -13,12 +13,13 @@ from harvest.errors import SettingsError
 from harvest.futures import fixed_quota, project, rule_from, trace_risk
 from harvest.futures.engine import MOST_YEARS, make_blocks, prepare, thread_count
 from harvest.futures.project import EVENT_COLUMNS
+from harvest.population import BY_NAME
 from harvest.record.model import Level, Losses, Objectives, SurveyPlan, fixed
 
 from ..builders import make_rates, make_record, make_survey, spread
 from .simulation import growth
 
-CURVES = ("logistic", "theta-logistic", "fox", "gompertz", "allee")
+CURVES = tuple(BY_NAME)
 rules = st.one_of(
     st.floats(0, 3000).map(lambda q: ("fixed quota", {"quota": q})),
     st.floats(0.01, 1).map(lambda u: ("fixed share", {"share": u})),
@@ -341,7 +342,7 @@ def test_losses_can_be_left_out():
     ("season", "when", "later"), [("short", "before", 1), ("short", "after", 0), ("all year", "start", 1)]
 )
 def test_years_are_labelled_by_quota_and_by_the_count_that_shows_its_effect(season, when, later):
-    table = project(make_record(season, when, lag=0), make_rates(draws=2, first_year=2031), fixed_quota(1), 3).by_year
+    table = project(make_record(season, when), make_rates(draws=2, first_year=2031), fixed_quota(1), 3).by_year
     assert table["quota_year"].tolist() == [2031, 2032, 2033]
     assert table["count_year"].tolist() == [2031 + later, 2032 + later, 2033 + later]
 

@@ -114,8 +114,11 @@ def test_recovery_is_the_largest_quota_that_still_recovers():
     assert got.probability == pytest.approx(0.7)
     none = recommend_quota(record, make_curve([0, 10], [0.5, 0.4], "back_above_limit"), "recovery")
     assert (none.qualifies, none.quota, none.miss) == (False, 0.0, pytest.approx(0.2))
-    default = recommend_quota(make_record(), curve, "recovery")
-    assert (default.criterion.year, default.criterion.bound) == (10, 0.8)
+    default = recommend_quota(make_record(objectives=Objectives(limit=Level(300.0))), curve, "recovery")
+    assert (default.criterion.year, default.criterion.bound, default.criterion.assumed) == (10, 0.8, True)
+    assert not got.criterion.assumed
+    with pytest.raises(SettingsError, match="needs a limit"):
+        recommend_quota(make_record(), curve, "recovery")
 
 
 CULL = make_record(objectives=Objectives(ceiling=Level(500.0), reduction=ByYear(5, 0.8)))

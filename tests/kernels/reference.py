@@ -23,7 +23,9 @@ def growth(curve: int, n: float, r: float, k: float, s: float) -> float:
         return r * n * math.log(k / n)
     if curve == 3:
         return n ** (1 - s) * k**s - n
-    return r * n * (1 - n / k) * (n / k - s)
+    if curve == 4:
+        return r * n * (1 - n / k) * (n / k - s)
+    raise ValueError(f"no growth curve {curve} here: add it")
 
 
 def quota(rule: int, settings: list[float], x: float) -> float:
@@ -54,6 +56,7 @@ class Draw:
     limit: float
     collapse: float
     ceiling: float
+    target: float
     weather: float
 
 
@@ -83,7 +86,7 @@ def future(s, rule_settings, available, recorded, curve: int, d: Draw, recent: l
     x, last, eps = d.start, s.last_quota, d.weather
     out: dict = {name: [] for name in ("start", "removals", "counted", "quota", "legal")}
     summary = dict.fromkeys(
-        ("below", "collapsed", "back", "under", "closures", "legal", "change", "shortfalls", "bounded"), 0.0
+        ("below", "collapsed", "back", "under", "closures", "legal", "squares", "change", "shortfalls", "bounded"), 0.0
     )
     for t in range(s.years):
         if s.when == 0:
@@ -122,6 +125,7 @@ def future(s, rule_settings, available, recorded, curve: int, d: Draw, recent: l
                 summary[name] = t + 1.0
         summary["closures"] += q <= 0
         summary["legal"] += legal
+        summary["squares"] += legal**2
         summary["change"] += abs(q - last) if t > 0 else 0.0
         summary["shortfalls"] += short
         summary["bounded"] += bounded

@@ -9,8 +9,11 @@ from harvest.futures.rules import RULES, rule_from
 from harvest.kernels.equilibria import years_to_cross
 from harvest.kernels.growth import fill_growth, growth_array
 from harvest.kernels.rules import fill_quota
+from harvest.population import BY_NAME
 
 from . import reference
+
+CODES = [curve.code for curve in BY_NAME.values()]
 
 
 def lanes(curve: int, n: int = 500):
@@ -25,7 +28,7 @@ def lanes(curve: int, n: int = 500):
     return x, r, k, s
 
 
-@pytest.mark.parametrize("curve", range(5))
+@pytest.mark.parametrize("curve", CODES)
 def test_growth_curves(curve):
     x, r, k, s = lanes(curve)
     expected = [reference.growth(curve, *values) for values in zip(x, r, k, s, strict=True)]
@@ -39,13 +42,13 @@ def test_growth_curves(curve):
 
 
 def test_growth_array_broadcasts_and_mixes_curves():
-    curve = np.arange(5)[:, None]
+    curve = np.array(CODES)[:, None]
     n = np.linspace(0, 1500, 7)[None, :]
     got = growth_array(curve, n, 0.3, 1000.0, 0.2)
-    assert got.shape == (5, 7)
-    for i in range(5):
+    assert got.shape == (len(CODES), 7)
+    for i, code in enumerate(CODES):
         for j in range(7):
-            assert got[i, j] == pytest.approx(reference.growth(i, n[0, j], 0.3, 1000.0, 0.2), rel=1e-10, abs=1e-10)
+            assert got[i, j] == pytest.approx(reference.growth(code, n[0, j], 0.3, 1000.0, 0.2), rel=1e-10, abs=1e-10)
 
 
 SETTINGS = {
@@ -75,7 +78,7 @@ def test_ramp_is_continuous_and_closes_below():
     assert rule.quota([400.0, 600.0, 900.0]) == pytest.approx([0.3 * 400 * 0.5, 180.0, 270.0])
 
 
-@pytest.mark.parametrize("curve", range(5))
+@pytest.mark.parametrize("curve", CODES)
 @pytest.mark.parametrize(("season", "when"), [(0, 0), (0, 1), (1, 0)])
 @pytest.mark.parametrize("falling", [True, False])
 def test_years_to_cross(curve, season, when, falling):

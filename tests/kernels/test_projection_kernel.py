@@ -10,6 +10,7 @@ import pytest
 from harvest.kernels import projection as kernel
 from harvest.kernels.histogram import BINS, base_of
 from harvest.kernels.randomness import normals
+from harvest.population import BY_NAME
 
 from . import reference
 
@@ -55,6 +56,7 @@ def make_draws(n, lag, seed=1, demographic=True):
     d[kernel.LIMIT] = rng.uniform(200, 500, n)
     d[kernel.COLLAPSE] = 0.1 * d[kernel.K]
     d[kernel.CEILING] = rng.uniform(600, 1000, n)
+    d[kernel.TARGET] = rng.uniform(300, 800, n)
     d[kernel.WEATHER] = rng.standard_normal(n)
     d[kernel.COLUMNS :] = rng.uniform(100, 900, (lag, n))
     return d
@@ -105,7 +107,7 @@ def lane_by_lane(settings, blocks, draws, available=None, recorded=None):
 
 CASES = {
     f"curve {curve}, season {season}, when {when}, lag {lag}, rule {rule}": (curve, season, when, lag, rule)
-    for curve in range(5)
+    for curve in (c.code for c in BY_NAME.values())
     for season, when, lag in ((0, 0, 0), (0, 0, 2), (0, 1, 1), (0, 1, 3), (1, 0, 0), (1, 0, 1))
     for rule in ((curve + lag) % 4, (curve + lag + 1 + season) % 4)
 }
@@ -146,10 +148,12 @@ def check_sums(got, futures, draws, settings, lanes):
         np.array([f[key] for f in futures]).T for key in ("counted", "removals", "quota", "legal")
     )
     per = settings.futures_per_draw
-    limit, collapse, ceiling = (np.repeat(draws[row], per) for row in (kernel.LIMIT, kernel.COLLAPSE, kernel.CEILING))
+    rows = (kernel.LIMIT, kernel.COLLAPSE, kernel.CEILING, kernel.TARGET)
+    limit, collapse, ceiling, target = (np.repeat(draws[row], per) for row in rows)
     below, collapsed, above = counted < limit, counted < collapse, counted > ceiling
     ever = np.logical_or.accumulate
     flags = [below, ever(below), collapsed, ever(collapsed), above, ever(~below), ever(~above), quota <= 0]
+    flags.append(counted >= target)
     clustered = [f.reshape(settings.years, -1, per).mean(axis=2) for f in flags]
     np.testing.assert_array_equal(got["events"], np.array([f.sum(axis=1) for f in flags]).T)
     if per > 1:

@@ -44,9 +44,14 @@ def test_no_count_within_a_band_would_get_less_than_the_card_gives(demos):
     assert (bands["quota"].to_numpy()[place] <= rule.quota(counts / table.count_bias) + 1e-9).all()
 
 
-def test_a_constant_quota_has_one_band_whatever_the_count(tables):
-    card = tables["deer"].card
-    assert list(card["quota"]) == [tables["deer"].recommendation.quota] * 2
+@pytest.mark.parametrize(("demo", "level"), [("deer", 1200.0), ("geese", 9000.0)])
+def test_a_constant_quota_stops_under_the_limit_or_the_ceiling_it_serves(tables, demo, level):
+    table = tables[demo]
+    quota = table.recommendation.quota
+    assert list(table.card["quota"]) == [0.0, quota, quota]
+    edge = table.card["count_from"].iloc[1]
+    assert edge == table.card["count_below"].iloc[0] == np.ceil(level * table.count_bias)
+    assert list(table.card["when"]) == ["count", "count", "no count made"]
 
 
 @pytest.mark.parametrize(("span", "step"), [(16.0, 1.0), (17.0, 2.0), (33.0, 2.5), (1600.0, 100.0), (0.5, 0.05)])

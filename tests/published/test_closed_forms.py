@@ -9,6 +9,7 @@ import pytest
 from scipy.optimize import brentq, minimize_scalar
 
 from harvest.population import BY_NAME, by_draw
+from harvest.record.model import CURVES
 from harvest.yields.reference import both_equilibria, reference_values, return_time, slope_at, sustainable_today
 from harvest.yields.thresholds import counted_equilibria
 
@@ -29,6 +30,10 @@ SETS = [
 ]
 EVERY = pytest.mark.parametrize("given", SETS, ids=lambda g: f"{g[0]}-{g[1]}-{g[3]}")
 SEASONS = pytest.mark.parametrize("season", ["short", "all year"])
+
+
+def test_every_curve_is_here():
+    assert {given[0] for given in SETS} == set(BY_NAME) == set(CURVES)
 
 
 def g_of(given):

@@ -9,6 +9,7 @@ import pytest
 from scipy import stats
 
 from harvest.futures import fixed_quota, project, rule_from
+from harvest.population import BY_NAME
 from harvest.record.model import LifeHistory, Losses
 
 from ..builders import make_rates, make_record
@@ -74,11 +75,10 @@ RULES = [
     ("escapement", {"escapement": 250.0}),
     ("ramp", {"lower": 100.0, "upper": 700.0, "share": 0.5}),
 ]
-CURVES = ["logistic", "theta-logistic", "fox", "gompertz", "allee"]
 MOMENTS = [("short", "before"), ("short", "after"), ("all year", "start")]
 
 
-@pytest.mark.parametrize("curve", CURVES)
+@pytest.mark.parametrize("curve", BY_NAME)
 @pytest.mark.parametrize(("season", "when", "lag"), [(*m, lag) for m in MOMENTS for lag in range(m[1] == "after", 4)])
 @pytest.mark.parametrize(("rule", "settings"), RULES, ids=lambda v: v if isinstance(v, str) else "")
 def test_without_noise_the_projection_is_the_recursion(curve, season, when, lag, rule, settings):
@@ -120,9 +120,7 @@ def test_demographic_noise_alone_has_variance_one_over_what_grows(season, when, 
     n, demo, take = 60_000, 1.5, 300.0
     unit = 1.0 if mass is None else 1000 / mass
     rates = make_rates("logistic", n, r=0.3, K=2000.0, abundance=900.0, sigma_demo=demo)
-    record = make_record(
-        season, when, lag=0, unit="animals" if mass is None else "tonnes", life=LifeHistory(body_mass=mass)
-    )
+    record = make_record(season, when, unit="animals" if mass is None else "tonnes", life=LifeHistory(body_mass=mass))
     paths = project(record, rates, fixed_quota(take), 2, paths=n).paths
     grows = 600.0 if season == "short" else 900.0
     mean = 600 + 0.3 * 600 * 0.7 if season == "short" else 900 + 0.3 * 900 * (1 - 0.45) - take

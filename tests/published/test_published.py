@@ -74,4 +74,9 @@ def test_every_value_says_where_it_is_from():
     for value in POINTS:
         assert value["citation"] and value["where"] and 0 < value["tolerance"] < 0.05
         assert isinstance(value["from_memory"], bool)
-    assert REMOVALS["citation"] and REMOVALS["from_memory"] is True
+        assert value["basis"] in ("printed", "derived")
+    assert REMOVALS["citation"]
+    for stock in REMOVALS["stock"]:
+        assert stock["where"] and isinstance(stock["from_memory"], bool)
+    # of a stock N_min and the bound are printed; counted once, so that the count does not rest on one table
+    assert sum(value["basis"] == "printed" for value in POINTS) + len(REMOVALS["stock"]) >= 25

@@ -10,7 +10,9 @@ from scipy import stats
 
 from harvest.errors import RatesError
 from harvest.rates import draw_rates
-from harvest.rates.approach import latest_usable_count
+from harvest.rates.approach import latest_usable_count, stated_bias
+from harvest.rates.losses import removals_factor, total_removals
+from harvest.record.counts import absolute_counts, latest_absolute_count
 from harvest.record.model import LifeHistory, Losses, fixed
 
 from ..builders import make_record, make_survey, spread
@@ -145,24 +147,78 @@ def test_without_noise_abundance_is_the_recursion_through_recorded_removals(seas
 
 
 @pytest.mark.parametrize(("seen_when", "shown_when"), [("after", "before"), ("before", "after")])
-def test_a_survey_with_its_own_moment_starts_there_but_abundance_is_shown_at_the_records_moment(seen_when, shown_when):
+def test_a_count_at_another_moment_than_the_records_is_refused(seen_when, shown_when):
+    """The checks of a record refuse it too; moments are never mixed."""
     survey = make_survey({2019: 900.0}, YEARS, 0.1, when=seen_when)
     record = history("short", shown_when, 1, losses=LOSSES, first_quota_year=2023, surveys=(survey,))
-    rates = draw_rates(record, draws=50)
-    seen = 900 * np.exp(np.sqrt(np.log(1.01)) * scores(rates, record))
-    start, left = by_hand("short", seen_when == "after", seen)
-    np.testing.assert_allclose(rates.column("abundance"), start[2023], rtol=1e-9)
-    expected = left[2022] if shown_when == "after" else start[2023]
-    np.testing.assert_allclose(rates.column("counted"), expected, rtol=1e-9)
-    np.testing.assert_allclose(rates.recent[0], left[2022] if shown_when == "after" else start[2022], rtol=1e-9)
+    with pytest.raises(RatesError, match=f'2019 is made "{seen_when}"'):
+        draw_rates(record, draws=50)
 
 
-def scores(rates, record):
-    """The count's standard normals of these draws, read off the same record with nothing between count and quota."""
-    survey = record.surveys[0]
-    plain = make_record(counts={2019: 1000.0}, years=(2019,), cv=0.1, lag=0, first_quota_year=2019)
-    same = draw_rates(replace(plain, surveys=(replace(plain.surveys[0], name=survey.name),)), rates.seed, len(rates))
-    return np.log(same.column("abundance") / 1000) / np.sqrt(np.log(1.01))
+@pytest.mark.parametrize(
+    ("season", "when", "latest"), [("short", "before", 2021), ("short", "after", 2019), ("all year", "start", 2021)]
+)
+def test_a_count_that_is_made_after_the_quota_is_set_is_not_used(season, when, latest):
+    counts = {2019: 900.0, 2021: 800.0, 2022: 700.0}
+    record = replace(history(season, when, 1, first_quota_year=2021), surveys=())
+    record = replace(record, surveys=(make_survey(counts, YEARS, when=when),))
+    assert YEARS[latest_usable_count(record).row] == latest
+    found = latest_absolute_count(record)
+    assert (found, draw_rates(record, draws=5).count_year) == (latest_usable_count(record), latest)
+    early = replace(record, first_quota_year=2018)
+    assert latest_absolute_count(early) is None
+    with pytest.raises(RatesError, match="known by the quota of 2018"):
+        draw_rates(early, draws=5)
+
+
+def test_a_count_above_zero_stands_for_its_year_before_a_more_precise_zero():
+    zero = make_survey({2019: 0.0, 2021: 0.0}, YEARS, 0.1, name="zero", detection_limit=20.0)
+    more = make_survey({2019: 40.0}, YEARS, 0.5, name="more")
+    record = make_record(years=YEARS, surveys=(zero, more), removals=dict.fromkeys(YEARS, 0.0))
+    assert {y: (c.survey.name, c.count) for y, c in absolute_counts(record).items()} == {
+        2019: ("more", 40.0),
+        2021: ("zero", 0.0),
+    }
+    (note,) = draw_rates(record, draws=5).notes
+    assert note.startswith("an absolute count of zero in 2021 (fewer than 20) cannot be used")
+    assert "zero" not in note.replace("count of zero", ""), "the name of a survey can be private"
+
+
+@pytest.mark.parametrize(("season", "when"), [("short", "before"), ("short", "after"), ("all year", "start")])
+def test_removals_that_leave_nothing_in_any_draw_are_an_error(season, when):
+    taken = dict.fromkeys(YEARS, 0.0) | {2021: 1e6}
+    record = history(season, when, 1, removals=taken, first_quota_year=2023)
+    with pytest.raises(RatesError, match="removals on record since the count of 2019 are more than any draw held"):
+        draw_rates(record, draws=40)
+
+
+def test_draws_that_die_out_of_themselves_are_not_laid_to_the_removals():
+    """N + 2N(1 − N/K) is below zero from 1.5 K on, and a demographic draw below one animal is gone."""
+    record = make_record(
+        years=YEARS,
+        counts={2019: 900.0},
+        removals=dict.fromkeys(YEARS, 0.0),
+        rates={"growth_rate": fixed(2.0), "carrying_capacity": fixed(50.0)},
+    )
+    with pytest.raises(RatesError, match="took all there was in 0% of draws, and the rest died out"):
+        draw_rates(record, draws=40)
+
+
+@pytest.mark.parametrize(("taken", "told"), [(120.0, False), (1100.0, True)])
+def test_a_note_tells_how_many_draws_the_removals_emptied(taken, told):
+    n = 4000
+    record = history("short", "before", 1, removals=dict.fromkeys(YEARS, 0.0) | {2022: taken}, first_quota_year=2023)
+    rates = draw_rates(record, draws=n)
+    gone = (rates.column("abundance") == 0).mean()
+    if not told:
+        assert (gone <= 0.01, rates.notes) == (True, ())
+        return
+    assert 0.01 < gone < 0.99
+    (note,) = rates.notes
+    assert note == (
+        f"in {gone:.1%} of draws nothing is left by the season of 2023: removals on record since the count of 2019 "
+        "took all there was"
+    )
 
 
 CASES = {
@@ -241,3 +297,17 @@ def test_a_count_after_the_last_season_is_todays_abundance_and_what_a_rule_sees_
     np.testing.assert_array_equal(rates.recent[1], seen)
     assert np.isnan(rates.recent[0]).all(), "2019 is on record or was not counted"
     np.testing.assert_allclose(rates.column("abundance"), seen + g(seen), rtol=1e-12)
+
+
+def test_the_stated_bias_is_its_median():
+    assert stated_bias(make_survey({2020: 1.0}, YEARS, bias=fixed(0.8))) == 0.8
+    assert stated_bias(make_survey({2020: 1.0}, YEARS, bias=spread("uniform", low=0.5, high=0.9))) == pytest.approx(0.7)
+
+
+def test_total_removals_follow_one_formula():
+    rates = draw_rates(make_record(losses=LOSSES), draws=4)
+    assert removals_factor(rates.table) == pytest.approx(np.full(4, 1.3))
+    assert total_removals(rates.table, 10.0) == pytest.approx(np.full(4, 20.0))
+    np.testing.assert_array_equal(rates.factor, removals_factor(rates.table))
+    legal = np.array([[0.0], [5.0]])
+    np.testing.assert_array_equal(rates.total_removals(legal), total_removals(rates.table, legal))

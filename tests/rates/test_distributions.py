@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 from scipy import integrate, stats
 
 from harvest.rates.distributions import DOMAINS, outside, quantile
+from harvest.record.fields import FIELDS
 
 from ..builders import spread
 
@@ -115,3 +116,19 @@ def test_which_meaning_each_rate_has():
     assert proportions == {"gompertz shape", "allee shape"}
     assert {name for name, domain in DOMAINS.items() if domain == CORRELATION} == {"autocorrelation"}
     assert DOMAINS["bias"] == DOMAINS["growth_rate"] == DOMAINS["carrying_capacity"] == POSITIVE
+
+
+def test_the_record_and_the_draws_give_each_range_the_same_meaning():
+    """Whether "90% between" is lognormal or logit-normal is told twice: by a field's range and by a rate's domain."""
+    ranges = [f for f in FIELDS if f.sort == "distribution"]
+    seen = set()
+    for field in ranges:
+        shaped = field.key == "shape"
+        for curve in field.only_for if shaped else (None,):
+            name, narrow = f"{curve} shape" if shaped else field.key, field.narrowed(curve)
+            assert (narrow.is_positive, narrow.is_proportion) == (
+                DOMAINS[name] == POSITIVE,
+                DOMAINS[name] == PROPORTION,
+            ), (field.path, curve)
+            seen.add(name)
+    assert seen == set(DOMAINS)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import unicodedata
+from itertools import combinations
 from typing import Any
 
 from hypothesis import strategies as st
@@ -156,7 +157,7 @@ def objectives(draw: st.DrawFn) -> Objectives:
         collapse=collapse,
         horizon=draw(st.integers(1, 200)),
         tolerance=draw(st.floats(1e-6, 0.999)),
-        recovery=draw(aims) if limit or target else None,
+        recovery=draw(aims) if limit else None,
         reduction=draw(aims) if ceiling else None,
         plan_years=draw(st.integers(1, 10)),
         recovery_factor=draw(st.floats(0.1, 1.0)),
@@ -215,7 +216,7 @@ def records(draw: st.DrawFn) -> Record:
     found = tuple({s.column: s for s in drawn if s.column not in pool}.values())
     curves, rates = draw(curve_sets())
     stated = {name for name, _ in rates}.union(*({name for name, _ in c.rates} for c in curves))
-    pairs = [(a, b) for a in CORRELATED for b in CORRELATED if a < b and {a, b} <= stated]
+    pairs = [p for p in combinations(CORRELATED, 2) if set(p) <= stated and set(p) != {"growth_rate", "max_growth"}]
     correlations: tuple[Correlation, ...] = ()
     if pairs and draw(st.booleans()):
         correlations = (Correlation(*draw(st.sampled_from(pairs)), draw(st.floats(-0.95, 0.95))),)

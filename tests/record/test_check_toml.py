@@ -178,6 +178,39 @@ def test_impossible_correlations_are_found(more: str, words: list[str]) -> None:
     assert told(problems_of(f"{TOML}\n[[correlation]]\n{more}\n"), "error", "correlation", *words)
 
 
+def both_growths(*values: float) -> str:
+    """A record whose curves state growth under either name, each correlated with carrying capacity."""
+    text = edited(TOML, LOGISTIC, '[[curve]]\nname = "logistic"\ngrowth_rate = 0.3\n\n[[curve]]\nname = "fox"\n')
+    for name, value in zip(("growth_rate", "max_growth"), values, strict=True):
+        text += f'[[correlation]]\nbetween = ["{name}", "carrying_capacity"]\nvalue = {value}\n'
+    return text
+
+
+def test_growth_has_one_correlation_under_its_two_names() -> None:
+    found = problems_of(both_growths(-0.3, 0.3))
+    assert told(found, "error", "correlation 2, between", "max_growth", "0.3, elsewhere -0.3", "one rate under two")
+    assert problems_of(both_growths(-0.3, -0.3)) == ()
+    more = '[[correlation]]\nbetween = ["growth_rate", "max_growth"]\nvalue = 0.9\n'
+    found = problems_of(both_growths(-0.3, -0.3) + more)
+    assert told(found, "error", "correlation 3, between", "one rate under two names", "Take the correlation out")
+
+
+def test_a_contradiction_between_the_two_names_of_growth_is_found() -> None:
+    """As one rate they cannot be; four rates in a chain with the same values could."""
+    text = edited(both_growths(0.8, 0.8), "carrying_capacity = {", "autocorrelation = 0.1\ncarrying_capacity = {")
+    text = edited(
+        text, '"max_growth", "carrying_capacity"]\nvalue = 0.8', '"max_growth", "process_noise"]\nvalue = -0.8'
+    )
+    text += '[[correlation]]\nbetween = ["carrying_capacity", "process_noise"]\nvalue = 0.2\n'
+    assert told(problems_of(text), "error", "correlation", "contradict each other")
+    assert problems_of(edited(text, '["growth_rate", "carrying', '["autocorrelation", "carrying')) == ()
+
+
+def test_a_recovery_without_a_limit_is_found_even_with_a_target() -> None:
+    text = edited(TOML, "limit = 300\n", "recovery = { years = 10, chance = 0.8 }\n")
+    assert told(problems_of(text), "error", "objectives.recovery", "recovery needs limit", "Add limit")
+
+
 def test_possible_correlations_pass() -> None:
     more = '[[correlation]]\nbetween = ["max_growth", "carrying_capacity"]\nvalue = 0.6\n'
     more += '[[correlation]]\nbetween = ["carrying_capacity", "process_noise"]\nvalue = 0.6\n'

@@ -5,8 +5,6 @@ from __future__ import annotations
 import errno
 import os
 import signal
-from collections.abc import Callable
-from contextlib import suppress
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
@@ -18,10 +16,10 @@ from harvest.errors import RecordError, SettingsError
 from harvest.record import Record, demo_folder, read_record, save_record
 from harvest.record.model import History
 
+from .interrupting import count_calls, die, interrupt
 from .strategies import records
 
 DEMO = read_record(demo_folder("deer"))
-SYSTEM_CALLS = ("mkdir", "open", "fdopen", "fsync", "replace", "unlink", "close")
 
 
 def with_more_removals(record: Record) -> Record:
@@ -126,52 +124,6 @@ def test_any_record_can_be_saved_over_any_other(tmp_path: Path, record: Record) 
     save_record(record, tmp_path)
     assert read_record(tmp_path) == record
     assert len(names(tmp_path)) == 2
-
-
-def count_calls(action: Callable[[], None]) -> list[str]:
-    """The system calls of an action, in order."""
-    calls: list[str] = []
-    with pytest.MonkeyPatch.context() as patch:
-        for name in SYSTEM_CALLS:
-            real = getattr(os, name)
-
-            def spy(*args: Any, _name: str = name, _real: Any = real, **kwargs: Any) -> Any:
-                calls.append(_name)
-                return _real(*args, **kwargs)
-
-            patch.setattr(os, name, spy)
-        action()
-    return calls
-
-
-def interrupt(patch: pytest.MonkeyPatch, target: int, strike: Callable[[str, Any, tuple[Any, ...]], Any]) -> None:
-    """Have ``strike`` stand in for the system call number ``target``."""
-    seen = 0
-    for name in SYSTEM_CALLS:
-        real = getattr(os, name)
-
-        def stand_in(*args: Any, _name: str = name, _real: Any = real, **kwargs: Any) -> Any:
-            nonlocal seen
-            seen += 1
-            return strike(_name, _real, args) if seen == target + 1 else _real(*args, **kwargs)
-
-        patch.setattr(os, name, stand_in)
-
-
-def die(after: bool) -> Callable[[str, Any, tuple[Any, ...]], Any]:
-    """Kill this process before or after a call; a file that is opened for writing gets half its text."""
-
-    def strike(name: str, real: Any, args: tuple[Any, ...]) -> Any:
-        if name == "fdopen" and after:
-            stream = real(*args)
-            stream.write(b"year,remov")
-            stream.flush()
-        elif after:
-            with suppress(OSError):
-                real(*args)
-        os.kill(os.getpid(), signal.SIGKILL)
-
-    return strike
 
 
 @pytest.mark.parametrize("change", sorted(CHANGES))

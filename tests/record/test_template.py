@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import errno
+import os
+import signal
 import subprocess
 import sys
 import tomllib
 from pathlib import Path
+from typing import Any
 
 import pytest
 
@@ -16,6 +20,8 @@ from harvest.record.check import check_texts
 from harvest.record.fields import FIELDS, SECTIONS, field_at, fields_of
 from harvest.record.schema import INSIDE_0_1, Interval
 from harvest.record.template import blank_record_files
+
+from .interrupting import count_calls, die, interrupt
 
 
 def test_the_template_passes_every_check() -> None:
@@ -51,6 +57,69 @@ def test_a_record_from_the_template(tmp_path: Path) -> None:
     assert check_record(folder)[1] == ()
     with pytest.raises(SettingsError, match="not empty"):
         make_record(folder)
+
+
+@pytest.mark.parametrize("demo", [None, "deer"])
+@pytest.mark.parametrize("after", [False, True])
+def test_a_killed_process_leaves_no_half_made_record(tmp_path: Path, demo: str | None, after: bool) -> None:
+    calls = count_calls(lambda: make_record(tmp_path / "trial", demo))
+    assert calls.count("fsync") >= 2
+    whole = {path.name: path.read_bytes() for path in (tmp_path / "trial").iterdir()}
+    seen = set()
+    for target in range(len(calls)):
+        folder = tmp_path / str(target)
+        child = os.fork()
+        if child == 0:
+            interrupt(pytest.MonkeyPatch(), target, die(after))
+            make_record(folder, demo)
+            os._exit(0)
+        assert os.waitstatus_to_exitcode(os.waitpid(child, 0)[1]) == -signal.SIGKILL
+        there = (folder / "record.toml").exists()
+        seen.add(there)
+        if there:
+            assert {p.name: p.read_bytes() for p in folder.iterdir() if not p.name.startswith(".")} == whole
+    assert seen == {False, True}
+
+
+@pytest.mark.parametrize("demo", [None, "deer"])
+@pytest.mark.parametrize("error", [OSError(errno.ENOSPC, "No space left on device"), KeyboardInterrupt()])
+def test_a_failing_call_leaves_a_whole_record_or_nothing(
+    tmp_path: Path, demo: str | None, error: BaseException
+) -> None:
+    def strike(name: str, real: Any, args: tuple[Any, ...]) -> Any:
+        if name == "close":
+            real(*args)
+        raise error
+
+    calls = count_calls(lambda: make_record(tmp_path / "trial", demo))
+    for target in range(len(calls)):
+        folder = tmp_path / str(target)
+        failed = False
+        with pytest.MonkeyPatch.context() as patch:
+            interrupt(patch, target, strike)
+            try:
+                make_record(folder, demo)
+            except (SettingsError, KeyboardInterrupt):
+                failed = True
+        if failed and not (folder / "record.toml").exists():
+            assert not folder.exists() or not any(folder.iterdir())
+        else:
+            assert sorted(p.name for p in folder.iterdir()) == sorted(p.name for p in (tmp_path / "trial").iterdir())
+            assert check_record(folder)[1] == ()
+
+
+def test_a_file_that_appears_meanwhile_is_not_overwritten(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Two processes that make the same record: the slower one is told, and the quicker one's files stay."""
+    real = template_module.write_new
+
+    def late(path: Path, data: bytes) -> None:
+        path.write_text("mine")
+        real(path, data)
+
+    monkeypatch.setattr(template_module, "write_new", late)
+    with pytest.raises(SettingsError, match="exists"):
+        make_record(tmp_path / "herd")
+    assert [p.read_text() for p in (tmp_path / "herd").iterdir()] == ["mine"]
 
 
 def test_an_empty_folder_may_be_filled(tmp_path: Path) -> None:

@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 
 from harvest.errors import SettingsError
+from harvest.population import BY_NAME
 from harvest.record.model import Level, Objectives
 from harvest.yields import find_thresholds
 from harvest.yields.thresholds import MOST_YEARS, counted_equilibria, crossing_years
@@ -66,7 +67,7 @@ def test_chances_of_the_fold_and_of_the_lower_equilibrium(logistic, season, when
 def test_the_fold_tips_the_population_both_ways():
     """A step of the model from just above the lower equilibrium climbs, from just below it falls to nothing."""
     rates = make_rates(
-        ["logistic", "theta-logistic", "fox", "gompertz", "allee"],
+        list(BY_NAME),
         r=[0.4, 0.4, 0.4, np.nan, 1.0],
         shape=[np.nan, 2, np.nan, 0.3, 0.1],
     )

@@ -1,0 +1,65 @@
+"""What a reader must be told about a table of draws before trusting what follows from it."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from harvest.kernels.growth import growth_array
+from harvest.population import by_draw
+from harvest.rates.table import Rates
+from harvest.record.model import Record
+
+#: Shares of draws below this are not worth a note.
+NOTABLE = 0.01
+
+
+def _overshooting(record: Record, rates: Rates) -> np.ndarray:
+    """Draws whose yearly step is unstable at carrying capacity: S'(K) ≤ −1."""
+    r, k, s = rates.column("r"), rates.column("K"), rates.column("shape")
+    return 1.0 + by_draw(rates.codes, "slope", k, r, k, s) <= -1.0
+
+
+def _crashing(record: Record, rates: Rates) -> np.ndarray:
+    """Draws in which today's abundance alone would bring the growth curve to zero within a year."""
+    x, r, k, s = (rates.column(name) for name in ("abundance", "r", "K", "shape"))
+    return (x > 0.0) & (x + growth_array(rates.codes, x, r, k, s) <= 0.0)
+
+
+def _crowded(record: Record, rates: Rates) -> np.ndarray:
+    """Draws in which today's abundance is more than twice the carrying capacity."""
+    return rates.column("abundance") > 2.0 * rates.column("K")
+
+
+def _crossed(record: Record, rates: Rates) -> np.ndarray:
+    """Draws in which the collapse level lies above the stated limit."""
+    if record.objectives.limit is None:
+        return np.zeros(len(rates), dtype=bool)
+    return rates.collapse_level(record.objectives.collapse) > rates.level(record.objectives.limit, np.inf)
+
+
+_NOTES = (
+    (
+        _overshooting,
+        "growth is so strong that the yearly step overshoots and does not settle (May 1976): risk need not rise "
+        "with the quota, and a population can crash without a take; check the growth rate and the shape",
+    ),
+    (
+        _crashing,
+        "today's abundance is so far above the carrying capacity that the growth curve falls to zero in one year: "
+        "the count and the range of the carrying capacity contradict each other",
+    ),
+    (
+        _crowded,
+        "today's abundance is more than twice the carrying capacity: check the count and the range",
+    ),
+    (
+        _crossed,
+        "the collapse level lies above the limit: the limit is no safeguard there",
+    ),
+)
+
+
+def cautions(record: Record, rates: Rates) -> tuple[str, ...]:
+    """Notes on draws that are likely not meant, each with the share of draws it concerns."""
+    shares = ((float(np.mean(concerns(record, rates))), text) for concerns, text in _NOTES)
+    return tuple(f"in {100.0 * share:.2g}% of the draws {text}" for share, text in shares if share >= NOTABLE)
