@@ -11,7 +11,8 @@ from concurrent.futures import ThreadPoolExecutor
 import numpy as np
 
 from harvest.errors import SettingsError
-from harvest.futures.engine import Prepared, Progress, prepare, workers
+from harvest.futures.engine import Progress, workers
+from harvest.futures.prepared import Prepared, prepare
 from harvest.futures.recommend import (
     Criterion,
     Recommendation,

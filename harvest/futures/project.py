@@ -10,7 +10,8 @@ import numpy as np
 import pandas as pd
 
 from harvest import __version__
-from harvest.futures.engine import Prepared, Progress, Tally, prepare, run, workers
+from harvest.futures.engine import Progress, Tally, run, workers
+from harvest.futures.prepared import Prepared, prepare
 from harvest.futures.rules import Rule
 from harvest.kernels import projection as kernel
 from harvest.kernels.histogram import quantiles

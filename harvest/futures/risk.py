@@ -10,7 +10,8 @@ import numpy as np
 
 from harvest import __version__
 from harvest.errors import SettingsError
-from harvest.futures.engine import Prepared, Progress, prepare, run, workers
+from harvest.futures.engine import Progress, run, workers
+from harvest.futures.prepared import Prepared, prepare
 from harvest.futures.project import EVENT_COLUMNS, event_error
 from harvest.futures.rounding import round_up
 from harvest.futures.rules import fixed_quota

@@ -7,7 +7,7 @@ from dataclasses import replace
 from datetime import date
 from importlib.metadata import version as installed
 
-from harvest.futures.engine import survey_error
+from harvest.futures.prepared import survey_error
 from harvest.plan import words
 from harvest.plan.table import QuotaTable
 from harvest.rates import Rates

@@ -5,13 +5,12 @@ from __future__ import annotations
 import numpy as np
 import pandas as pd
 
-from harvest.futures.engine import stated_bias
 from harvest.futures.recommend import Recommendation
 from harvest.futures.rules import Rule
 from harvest.kernels.codes import RECORDED, SIMULATED
 from harvest.plan import words
 from harvest.rates import Rates
-from harvest.rates.approach import absolute_counts
+from harvest.rates.approach import absolute_counts, stated_bias
 from harvest.record.model import Record
 from harvest.yields.reference import sustainable_today
 

@@ -9,8 +9,9 @@ import pandas as pd
 
 from harvest import __version__
 from harvest.errors import SettingsError
-from harvest.futures.engine import Progress, counts_ahead, prepare, workers
+from harvest.futures.engine import Progress, workers
 from harvest.futures.find import check_resolution, find_prepared
+from harvest.futures.prepared import counts_ahead, prepare
 from harvest.futures.project import Future, project_prepared
 from harvest.futures.recommend import (
     Criterion,

@@ -20,6 +20,7 @@ from harvest.rates.cautions import cautions
 from harvest.rates.distributions import DOMAINS, Interval, outside, quantile
 from harvest.rates.streams import stream
 from harvest.rates.table import Rates
+from harvest.record.curves import merged_rate
 from harvest.record.fields import CORRELATED
 from harvest.record.model import CurveChoice, Distribution, Record
 
@@ -44,17 +45,12 @@ def curve_counts(weights: np.ndarray, draws: int) -> np.ndarray:
     return counts
 
 
-def _merged(name: str) -> str:
-    """The growth rate goes by two names, one a curve states; they share one draw and its correlations."""
-    return "max_growth" if name == "growth_rate" else name
-
-
 def correlated_normals(record: Record, seed: int, draws: int) -> dict[str, np.ndarray]:
     """Standard normals of each correlated rate, shape (draws,), by Spearman's ρ through a Gaussian copula."""
-    names = [name for name in CORRELATED if name == _merged(name)]
+    names = [name for name in CORRELATED if name == merged_rate(name)]
     pearson = np.eye(len(names))
     for c in record.correlations:
-        i, j = names.index(_merged(c.first)), names.index(_merged(c.second))
+        i, j = names.index(merged_rate(c.first)), names.index(merged_rate(c.second))
         pearson[i, j] = pearson[j, i] = 2.0 * math.sin(math.pi * c.value / 6.0)
     try:
         factor = np.linalg.cholesky(pearson)
@@ -65,7 +61,7 @@ def correlated_normals(record: Record, seed: int, draws: int) -> dict[str, np.nd
             "above 0): bring some of them closer to 0"
         ) from error
     z = dict(zip(names, factor @ np.stack([stream(seed, n).standard_normal(draws) for n in names]), strict=True))
-    return {name: z[_merged(name)] for name in CORRELATED}
+    return {name: z[merged_rate(name)] for name in CORRELATED}
 
 
 def _domain(name: str, curve: str) -> Interval:

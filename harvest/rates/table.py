@@ -10,6 +10,7 @@ import pandas as pd
 from harvest import __version__
 from harvest.errors import RatesError
 from harvest.population import BY_NAME, by_draw
+from harvest.rates.losses import removals_factor, total_removals
 from harvest.record.model import Level, Objectives
 
 #: The columns of the table, with their units.
@@ -101,11 +102,11 @@ class Rates:
     @property
     def factor(self) -> np.ndarray:
         """Total removals per unit of legal take, without the other deaths: 1 + wounding + unreported."""
-        return 1.0 + self.column("wounding") + self.column("unreported")
+        return removals_factor(self.table)
 
     def total_removals(self, legal_take: np.ndarray | float) -> np.ndarray:
         """Total removals that a legal take brings, shape (draws,) or as broadcast."""
-        return np.asarray(legal_take * self.factor + self.column("other"))
+        return total_removals(self.table, legal_take)
 
     def legal_take(self, removals: np.ndarray | float) -> np.ndarray:
         """The legal take that brings these total removals, at least 0; shape (draws,) or as broadcast."""

@@ -14,8 +14,9 @@ from pathlib import Path
 
 import numpy as np
 
-from harvest.futures import Rule, pick_question, project, recommend_quota, trace_risk
-from harvest.futures.engine import prepare, run, workers
+from harvest.futures import Rule, find_quota, pick_question, project
+from harvest.futures.engine import run, workers
+from harvest.futures.prepared import prepare
 from harvest.rates import draw_rates
 from harvest.record import demo_folder, read_record
 from harvest.record.model import CurveChoice
@@ -105,13 +106,12 @@ def memory_per_future():
 
 
 def recommendation_seconds(rounds=5):
-    """The recommended quota of a demo: 50 quotas × 10,000 futures × 20 years, warm."""
+    """The recommended quota of a demo, warm: 50 quotas × 10,000 futures × 20 years, and those of the refinement."""
     record = read_record(demo_folder("deer"))
     rates = draw_rates(record, 1, 10_000)
 
     def ours():
-        curve = trace_risk(record, rates, points=50, years=20)
-        recommend_quota(record, curve, pick_question(record, rates))
+        find_quota(record, rates, pick_question(record, rates), points=50)
 
     ours()
     return best_of(rounds, ours)

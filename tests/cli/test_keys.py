@@ -39,10 +39,17 @@ def test_keys_and_files_agree(tmp_path, deer):
     text = (broken / "record.toml").read_text()
     (broken / "record.toml").write_text(text.replace("limit = 1200", "limit = 1200\nlimits = 1"))
     for number, (command, folder) in enumerate(
-        [("check", broken), ("yield", deer), ("thresholds", deer), ("project", deer), ("quota", deer)]
+        [
+            ("new", tmp_path / "fresh"),
+            ("check", broken),
+            ("yield", deer),
+            ("thresholds", deer),
+            ("project", deer),
+            ("quota", deer),
+        ]
     ):
         file = tmp_path / f"{number}.json"
-        draws = () if command == "check" else ("--draws", "500")
+        draws = () if command in ("new", "check") else ("--draws", "500")
         harvest(command, folder, *draws, "--json", file)
         told = json.loads(file.read_text())
         assert told["kind"] == command

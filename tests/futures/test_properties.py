@@ -11,7 +11,8 @@ from hypothesis import strategies as st
 
 from harvest.errors import SettingsError
 from harvest.futures import fixed_quota, project, rule_from, trace_risk
-from harvest.futures.engine import MOST_YEARS, make_blocks, prepare, thread_count
+from harvest.futures.engine import MOST_YEARS, thread_count
+from harvest.futures.prepared import make_blocks, prepare
 from harvest.futures.project import EVENT_COLUMNS
 from harvest.population import BY_NAME
 from harvest.record.model import Level, Losses, Objectives, SurveyPlan, fixed
