@@ -20,6 +20,7 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
     from harvest.commands import show
     from harvest.errors import CAUTION
     from harvest.record import check_record
+    from harvest.record.counts import supports_quota
 
     check_targets(json_file)
     record, problems = check_record(folder)
@@ -38,7 +39,12 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
         years = record.history.years
         counts = ", ".join(f"{s.name}: {sum(v is not None for v in s.values)} counts" for s in record.surveys)
         click.echo(f"{record.name}: {years[0]} to {years[-1]}, {counts or 'no survey'}; {len(warnings)} warning(s).")
-        click.echo(f"The record can be used; it asks for the quota of {record.quota_year}.")
+        if supports_quota(record):
+            click.echo(f"The record can be used; it asks for the quota of {record.quota_year}.")
+        else:
+            click.echo(
+                f"The record can be read, but the quota of {record.quota_year} cannot be worked out yet (see above)."
+            )
     show.caution()
     content = {
         "kind": "check",
@@ -46,6 +52,7 @@ def command(folder: Path, seed: int, json_file: Path | None) -> None:
         "seed": seed,
         "caution": CAUTION,
         "usable": record is not None,
+        "supports_quota": record is not None and supports_quota(record),
         "record_digest": None if record is None else record.digest(),
         "problems": [asdict(p) for p in problems],
     }

@@ -32,6 +32,7 @@ KEYS: dict[str, str] = {
     "count_survey": "The survey of that count.",
     "notes": "What a reader must know about the rates (ranges cut at what is possible).",
     "usable": "check: whether the record has no errors.",
+    "supports_quota": "check: whether it also holds what this year's abundance rests on, so that a quota can be told.",
     "problems": "check: every problem of the record.",
     "problems[].severity": "error or warning.",
     "problems[].file": "File of the problem.",

@@ -43,3 +43,19 @@ def latest_absolute_count(record: Record) -> AbsoluteCount | None:
         if count.count > 0.0 and year + (count.survey.when == "after") <= record.quota_year
     ]
     return max(usable, key=lambda pair: pair[0])[1] if usable else None
+
+
+def years_without_removals(record: Record) -> list[int]:
+    """Years from the latest usable absolute count to the first quota whose removals are not on record."""
+    latest = latest_absolute_count(record)
+    if latest is None:
+        return []
+    year = record.history.years[latest.row]
+    first = year + 1 if latest.survey.when == "after" else year
+    taken = dict(zip(record.history.years, record.history.removals, strict=True))
+    return [y for y in range(first, record.quota_year) if taken.get(y) is None]
+
+
+def supports_quota(record: Record) -> bool:
+    """Whether this year's abundance can be worked out: an absolute count, and removals on record since."""
+    return latest_absolute_count(record) is not None and not years_without_removals(record)

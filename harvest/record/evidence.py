@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from harvest.record.counts import latest_absolute_count
+from harvest.record.counts import latest_absolute_count, years_without_removals
 from harvest.record.history import Table
 from harvest.record.model import Record
 from harvest.record.reporting import Report
@@ -100,10 +100,28 @@ def warn_of_history(values: Values, table: Table, report: Report) -> None:
     if any(h is not None for h in removals) and not any(removals):
         cure = "If removals are not known, leave the cells empty; 0 says that nothing was taken."
         report.warning(f"column {REMOVALS}", "0 in every year", "removals are usually above 0", cure)
+    if get(values[""], "unit") == "animals":
+        absolute = [get(s, "column") for s in values["survey"] if get(s, "kind") == "absolute"]
+        for column in (REMOVALS, *(c for c in absolute if c)):
+            _warn_of_marks(column, table, report)
     for survey in values["survey"]:
         counts = table.columns.get(get(survey, "column") or "")
         if counts is not None:
             _warn_of_survey(values, survey, counts, table, report)
+
+
+def _warn_of_marks(column: str, table: Table, report: Report) -> None:
+    """Warn of a thousands mark written as a point: 1.2 among numbers of animals in the hundreds."""
+    numbers = table.columns.get(column, ())
+    most = max((n for n in numbers if n is not None), default=0.0)
+    for index, number in enumerate(numbers):
+        if number is not None and not float(number).is_integer() and number < most / 50.0:
+            report.warning(
+                table.where(index, column),
+                f"{number:.15g}, beside numbers up to {most:.15g}",
+                "animals are counted in whole numbers of one size",
+                f"If {number * 1000:.15g} was meant, write it without a thousands mark.",
+            )
 
 
 def _warn_of_survey(
@@ -140,10 +158,7 @@ def warn_of_abundance(record: Record, report_toml: Report, report_history: Repor
             "Add one, or no quota can be worked out.",
         )
         return
-    year = record.history.years[latest.row]
-    first = year + 1 if latest.survey.when == "after" else year
-    taken = dict(zip(record.history.years, record.history.removals, strict=True))
-    missing = [y for y in range(first, record.quota_year) if taken.get(y) is None]
+    year, missing = record.history.years[latest.row], years_without_removals(record)
     if missing:
         report_history.warning(
             f"column {REMOVALS}",

@@ -15,7 +15,8 @@ def harvest(*arguments, **environment):
         [sys.executable, "-m", "harvest", *map(str, arguments)],
         env={**os.environ, **environment},
         capture_output=True,
-        text=True,
+        encoding="utf-8",
+        errors="replace",
         timeout=120,
         check=False,
     )

@@ -170,3 +170,44 @@ def test_the_first_run_says_that_it_compiles_and_shows_progress(tmp_path, deer):
     again = harvest("quota", deer, *FEW, HARVEST_CACHE=str(tmp_path))
     assert "compiling" not in again.stderr
     assert again.stdout == first.stdout
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "sound"),
+    [("2024,800,11150", "2024,800,11150", True), ("2025,900,10920", "2025,,", False)],
+    ids=["whole", "removals missing since the count"],
+)
+def test_check_says_whether_a_quota_can_be_worked_out(tmp_path, old, new, sound):
+    folder, file = tmp_path / "mine", tmp_path / "c.json"
+    assert harvest("new", folder, "--demo", "geese").returncode == 0
+    text = (folder / "history.csv").read_text()
+    assert old in text
+    (folder / "history.csv").write_text(text.replace(old, new))
+    done = harvest("check", folder, "--json", file)
+    assert done.returncode == 0
+    told = json.loads(file.read_text())
+    assert (told["usable"], told["supports_quota"]) == (True, sound)
+    assert ("cannot be worked out yet" in done.stdout) is not sound
+    assert (harvest("quota", folder, *FEW).returncode == 0) is sound
+
+
+def test_files_are_written_though_nobody_reads_the_screen(tmp_path, deer):
+    out = tmp_path / "out"
+    with subprocess.Popen(
+        [sys.executable, "-m", "harvest", "quota", str(deer), "--out", str(out), *FEW],
+        stdout=subprocess.PIPE,
+        stderr=subprocess.PIPE,
+    ) as process:
+        process.stdout.close()
+        process.stderr.read()
+        process.wait(timeout=60)
+    assert (out / "quota.xlsx").stat().st_size > 5000
+
+
+def test_a_name_that_the_terminal_cannot_show_does_not_stop_the_work(tmp_path):
+    folder = tmp_path / "elk"
+    assert harvest("new", folder, "--demo", "deer").returncode == 0
+    text = (folder / "record.toml").read_text(encoding="utf-8").replace("red deer", "łoś")
+    (folder / "record.toml").write_text(text, encoding="utf-8")
+    done = harvest("quota", folder, *FEW, PYTHONIOENCODING="cp1252")
+    assert done.returncode == 0, done.stderr

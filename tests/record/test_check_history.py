@@ -166,3 +166,9 @@ def test_dates_tell_their_year() -> None:
     assert find_date_year("1.5.2019") == "2019"
     assert find_date_year("3 May 2019 12:00") == "2019"
     assert find_date_year("2019") is None
+
+
+def test_a_thousands_mark_written_as_a_point_is_asked_about() -> None:
+    faults = problems_of(TOML, edited(CSV, "2021,90,720", "2021,90,1.720"))
+    assert told(faults, "warning", "row 4 (year 2021)", "If 1720 was meant")
+    assert not told(problems_of(TOML, edited(CSV, "2021,90,720", "2021,90,720.5")), "warning", "was meant")
