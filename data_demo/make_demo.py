@@ -285,6 +285,7 @@ process_noise = { distribution = "uniform", low = 0.04, high = 0.10 }
 
 [objectives]
 limit = 3000
+collapse = 1500
 ceiling = 9000
 horizon = 15
 tolerance = 0.05

@@ -79,7 +79,16 @@ def command(
     show.title(f"Over the {len(table)} years under this rule")
     show.grid(
         ("Measure", "value", "± Monte Carlo"),
-        [[str(m).capitalize(), f"{v:,.4g}", f"{e:.2g}"] for m, v, e in future.measures.itertuples(index=False)],
+        [_measure(str(m), v, e) for m, v, e in future.measures.itertuples(index=False)],
     )
     show.caution()
     tell(written)
+
+
+def _measure(name: str, value: float, error: float) -> list[str]:
+    """A measure as a row: chances and shares as percentages, quantities in the record's unit."""
+    from harvest.plan import words
+
+    if name.startswith(("ever", "share")):
+        return [name.capitalize(), words.short_probability(value), words.error(error)]
+    return [name.capitalize(), f"{value:,.4g}", f"±{error:.1g}"]

@@ -63,7 +63,7 @@ def _heading(sheet: Worksheet, row: int, headings: tuple[str, ...]) -> None:
         cell.font = Font(bold=True, color="FFFFFF")
         cell.fill = PatternFill("solid", fgColor=ABUNDANCE)
         cell.alignment = Alignment(wrap_text=True, vertical="center", horizontal="center")
-    sheet.row_dimensions[row].height = 46
+    sheet.row_dimensions[row].height = 46 if max(map(len, headings)) > 14 else 22
 
 
 def _line(sheet: Worksheet, row: int, text: str, font: Font, columns: int, per_line: int) -> None:

@@ -11,12 +11,14 @@ import pytest
 from openpyxl import load_workbook
 
 from harvest.errors import CAUTION, SettingsError
+from harvest.futures import Rule
 from harvest.plan.cells import csv_text
 from harvest.plan.csv_files import card_csv, quota_csv
-from harvest.plan.json_files import json_bytes, quota_json
+from harvest.plan.json_files import future_json, json_bytes, quota_json, thresholds_json, yield_json
 from harvest.plan.workbook import quota_workbook
 from harvest.record.history import RISKY
 from harvest.writing import write_new, write_whole
+from harvest.yields import find_thresholds, summarise_yield
 from tests.plan.conftest import table_of
 
 SHEETS = [
@@ -106,13 +108,39 @@ def test_the_list_of_starts_holds_the_full_width_signs_and_the_line_break():
     assert set(RISKY) == set("=+-@\t\r\n＝＋－＠")
 
 
-def test_private_fields_leave_in_no_file(secretive):
-    table = table_of(secretive)
+@pytest.fixture(scope="module")
+def hidden(demos):
+    """The deer with every name and text private and recognisable, and a zero count after the last one used."""
+    deer = demos["deer"]
+    survey = replace(deer.surveys[0], name="SECRET-SURVEY", values=(*deer.surveys[0].values[:-1], 0.0))
+    notes = tuple("SECRET-NOTE" for _ in deer.history.years)
+    return replace(
+        deer,
+        name="SECRET-NAME",
+        species="SECRET-SPECIES",
+        place="SECRET-PLACE",
+        surveys=(survey,),
+        history=replace(deer.history, notes=notes),
+        plan=(("author", "SECRET-AUTHOR"),),
+        private=("name", "species", "place", "survey", "plan", "history.note", "history.removals"),
+    )
+
+
+@pytest.mark.parametrize("rule", [None, Rule("ramp", (1200.0, 2200.0, 0.1))], ids=["constant", "ramp"])
+def test_private_fields_leave_in_no_file(hidden, rule):
+    table = table_of(hidden, rule=rule)
     archive = zipfile.ZipFile(io.BytesIO(quota_workbook(table)))
     everything = b"".join(archive.read(name) for name in archive.namelist())
     everything += json_bytes(quota_json(table)) + quota_csv(table) + card_csv(table)
+    rates = table.rates
+    summary, found = summarise_yield(hidden, rates), find_thresholds(hidden, rates)
+    told = [yield_json(hidden, rates, summary), thresholds_json(hidden, rates, found)]
+    told.append(future_json(hidden, rates, table.future))
+    everything += b"".join(json_bytes(t) for t in told)
+    assert rates.notes
     assert b"SECRET" not in everything
     assert b"(private)" in everything
+    assert told[0]["present_removals"] is None
 
 
 def test_probabilities_are_never_printed_as_certain(tables):
