@@ -13,7 +13,7 @@ from harvest.rates import Rates
 from harvest.record.model import Record
 
 COLUMNS = ["when", "count_from", "count_below", "quota", "share_of_last"]
-#: Bands to aim at; the step is the next of 1, 2, 2.5 or 5 times a power of ten.
+#: Bands to aim at; the step is the next of 1, 2, 2.5, 3, 4 or 5 times a power of ten.
 BANDS = 16
 
 
@@ -21,7 +21,7 @@ def nice_step(span: float, bands: int = BANDS) -> float:
     """A round step that cuts ``span`` into about ``bands`` parts."""
     raw = span / bands
     power = 10.0 ** math.floor(math.log10(raw))
-    return next(m * power for m in (1.0, 2.0, 2.5, 5.0, 10.0) if m * power >= raw * (1.0 - 1e-9))
+    return next(m * power for m in (1.0, 2.0, 2.5, 3.0, 4.0, 5.0, 10.0) if m * power >= raw * (1.0 - 1e-9))
 
 
 def band_edges(record: Record, rates: Rates, rule: Rule, bias: float) -> list[float]:

@@ -92,7 +92,8 @@ def findings(table: QuotaTable) -> list[str]:
         told += _rule_sentences(table)
     told += _advice_sentences(table)
     if table.recommendation.criterion.question != "limit" and table.is_recommended:
-        told.append(_limit_sentence(table))
+        recovery = table.recommendation.criterion.question == "recovery"
+        told.append(_collapse_sentence(table) if recovery else _limit_sentence(table))
     if table.record.objectives.target is not None:
         told.append(_target_sentence(table))
     return told + _warnings(table)
@@ -142,7 +143,7 @@ def _advice_sentences(table: QuotaTable) -> list[str]:
 
 
 def _limit_sentence(table: QuotaTable) -> str:
-    """What the recommended quota does to the lower limit, within the aim's years and if it goes on."""
+    """What the recommended cull does to the lower limit, within the aim's years and if it goes on."""
     record, advice = table.record, table.recommendation
     year = advice.criterion.year
     soon, _ = table.curve.at("ever_below_limit", advice.quota, year)
@@ -151,9 +152,18 @@ def _limit_sentence(table: QuotaTable) -> str:
     if table.horizon > year:
         told += f", and {words.probability(later)} if the same quota goes on for {words.years(table.horizon)}"
     told += f"; your tolerance is {words.percent(table.tolerance)}."
-    if advice.criterion.question == "reduction" and later > table.tolerance:
+    if later > table.tolerance:
         told += " Stop this cull as soon as the count is under the ceiling: it is not a quota to keep."
     return told
+
+
+def _collapse_sentence(table: QuotaTable) -> str:
+    """Below its limit already, what a population risks is collapse."""
+    p, se = table.rule_chance("ever_collapsed", table.horizon)
+    return (
+        f"The chance of collapse (below {words.collapse_words(table.record)}) in {words.years(table.horizon)} is "
+        f"{words.probability(p)} ({words.error(se)})."
+    )
 
 
 def _target_sentence(table: QuotaTable) -> str:
