@@ -91,4 +91,4 @@ def _measure(name: str, value: float, error: float) -> list[str]:
 
     if name.startswith(("ever", "share")):
         return [name.capitalize(), words.short_probability(value), words.error(error)]
-    return [name.capitalize(), f"{value:,.4g}", f"±{error:.1g}"]
+    return [name.capitalize(), f"{float(f'{value:.4g}'):,.10g}", f"±{float(f'{error:.1g}'):,.10g}"]

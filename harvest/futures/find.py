@@ -78,6 +78,15 @@ def fresh_quotas(curve: RiskCurve, criterion: Criterion, unit: str) -> np.ndarra
     return np.array(sorted(q for q in inside if q not in curve.quotas))
 
 
+def _ends_too_soon(curve: RiskCurve, criterion: Criterion) -> bool:
+    """Whether the curve must be extended: its end still qualifies, or a cull's chance still rises there unmet."""
+    exact, qualifies, _ = read_off(curve, criterion)
+    if criterion.question == "reduction":
+        chance = criterion.excess(curve)
+        return not qualifies and bool(chance[-1] < chance[-2])
+    return qualifies and bool(exact >= curve.quotas[-1])
+
+
 def find_prepared(
     prepared: Prepared,
     criterion: Criterion,
@@ -98,8 +107,7 @@ def find_prepared(
     top = highest_quota(record, prepared.rates)
     curve = trace(with_zero_and_present(record, np.linspace(0.0, top, points)), progress)
     for _ in range(PASSES):
-        exact, qualifies, _ = read_off(curve, criterion)
-        if not (qualifies and criterion.question != "reduction" and exact >= curve.quotas[-1]):
+        if not _ends_too_soon(curve, criterion):
             break
         top = 2.0 * float(curve.quotas[-1])
         curve = curve.merged(trace(np.array([round_up(0.75 * top, unit), round_up(top, unit)])))

@@ -72,14 +72,14 @@ class Rule:
     def __str__(self) -> str:
         given = self.named_settings()
         if self.name == "fixed quota":
-            return f"fixed quota of {given['quota']:,.6g} a year"
+            return f"fixed quota of {given['quota']:,.10g} a year"
         if self.name == "fixed share":
             return f"fixed share: {100.0 * given['share']:.3g}% of the count"
         if self.name == "escapement":
-            return f"escapement: everything counted above {given['escapement']:,.6g}"
+            return f"escapement: everything counted above {given['escapement']:,.10g}"
         return (
-            f"ramp: nothing below {given['lower']:,.6g}, rising to {100.0 * given['share']:.3g}% of the count "
-            f"at {given['upper']:,.6g} and above"
+            f"ramp: nothing below {given['lower']:,.10g}, rising to {100.0 * given['share']:.3g}% of the count "
+            f"at {given['upper']:,.10g} and above"
         )
 
 

@@ -88,7 +88,7 @@ def _evidence(record: Record, rates: Rates) -> Pairs:
     pairs = [
         (
             "Abundance from",
-            f"{rates.count_survey} of {rates.count_year}: {usable.count:g}, coefficient of variation "
+            f"{rates.count_survey} of {rates.count_year}: {usable.count:,.10g}, coefficient of variation "
             f"{words.percent(usable.cv)}",
         ),
         ("Survey bias (count divided by abundance)", f"{usable.survey.bias}, median {bias:.3g}"),

@@ -78,10 +78,16 @@ def _card_note(table: QuotaTable) -> str:
             "itself; the risk shown is the rule's, and the card is on its safe side."
         )
     if len(table.card) > 2:
-        stops = "the ceiling" if table.recommendation.criterion.question == "reduction" else "the limit"
-        note += (
-            f" A count under {stops} stops the take until the plan is reviewed; the risk shown does not count on that."
-        )
+        reduction = table.recommendation.criterion.question == "reduction"
+        level = table.record.objectives.ceiling if reduction else table.record.objectives.limit
+        edge = words.number(float(table.card["count_below"].iloc[0]), table.record.unit)
+        name = "ceiling" if reduction else "limit"
+        told = f"the {name}, {words.level(table.record, level)}" if level is not None else f"the {name}"
+        if level is not None and level.of_capacity:
+            told += " at its median"
+        if table.count_bias != 1.0:
+            told += f", times {table.count_bias:.3g}, the survey's stated bias"
+        note += f" A count under {edge} ({told}) stops the take until a review; the risk does not count on it."
     return note
 
 

@@ -50,9 +50,11 @@ def _named(record: Record, curve: RiskCurve, advice: Recommendation, horizon: in
     named: dict[float, list[str]] = {0.0: ["no take"]}
     if record.present_quota is not None:
         named.setdefault(record.present_quota, []).append("present quota")
-    if advice.qualifies or advice.criterion.question != "reduction":
-        named.setdefault(advice.quota, []).append("recommended")
     best = least_risk(curve, horizon)
+    if advice.qualifies:
+        named.setdefault(advice.quota, []).append("recommended")
+    elif advice.criterion.question != "reduction" and best == 0.0 and not advice.further_runs:
+        named[0.0].append("closure")
     if best > 0.0:
         named.setdefault(best, []).append("least risk")
     return {quota: ", ".join(what) for quota, what in named.items()}

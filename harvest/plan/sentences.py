@@ -14,18 +14,25 @@ def headline(table: QuotaTable) -> str:
     what, quota = words.kind(table.record), words.number(table.first_quota, table.record.unit)
     if table.rule.feedback:
         return _rule_headline(table, f"{quota} {what}")
-    if not table.is_recommended:
-        if table.recommendation.criterion.question == "reduction" and not table.recommendation.qualifies:
-            most = words.number(table.recommendation.quota, table.record.unit)
-            return f"No cull examined (up to {most} {what} a year) gets under the ceiling in time."
+    if table.given and not table.is_recommended:
         return f"A legal quota of {quota} {what} a year, as asked{_failing(table)}."
+    if table.recommendation.criterion.question == "reduction":
+        return _reduction_headline(table, what)
     return _recommended_headline(table, f"{quota} {what}")
 
 
 def _failing(table: QuotaTable) -> str:
-    """What to add where the rule's risk is above the tolerance."""
+    """What to add where the rule in force does not do what is asked of it."""
+    record, aim = table.record, table.recommendation.criterion
+    if aim.question != "limit":
+        chance, _ = table.rule_chance(aim.event, aim.year)
+        if chance < aim.bound:
+            return (
+                f", but its chance of {_event_words(record, aim)} is {words.probability(chance)} and not "
+                f"{words.percent(aim.bound)}"
+            )
     p, _ = table.rule_risk
-    if p <= table.tolerance:
+    if aim.question == "recovery" or p <= table.tolerance:
         return ""
     return f", but its risk of {words.probability(p)} is above your tolerance of {words.percent(table.tolerance)}"
 
@@ -38,17 +45,26 @@ def _rule_headline(table: QuotaTable, quota: str) -> str:
     return f"The rule gives a legal quota of {quota} in {year}{_failing(table)}."
 
 
+def _reduction_headline(table: QuotaTable, what: str) -> str:
+    advice, unit = table.recommendation, table.record.unit
+    quota = words.number(advice.quota, unit)
+    if not advice.qualifies:
+        return f"No cull examined (up to {quota} {what} a year) gets under the ceiling in time."
+    if advice.quota == 0.0:
+        return "No cull is needed to get under the ceiling in time."
+    told = f"Take at least {quota} {what} a year to get under the ceiling in time"
+    soon, _ = table.rule_chance("ever_below_limit", advice.criterion.year)
+    if soon > table.tolerance:
+        level = "the lower limit" if table.record.objectives.limit is not None else "the collapse level"
+        told += (
+            f", but that risks falling below {level}: {words.probability(soon)}, above your tolerance of "
+            f"{words.percent(table.tolerance)}"
+        )
+    return told + "."
+
+
 def _recommended_headline(table: QuotaTable, quota: str) -> str:
     advice, what = table.recommendation, words.kind(table.record)
-    if advice.criterion.question == "reduction":
-        told = f"Take at least {quota} a year to get under the ceiling in time"
-        soon, _ = table.rule_chance("ever_below_limit", advice.criterion.year)
-        if soon > table.tolerance:
-            told += (
-                f", but that endangers the lower limit: {words.probability(soon)}, above your tolerance of "
-                f"{words.percent(table.tolerance)}"
-            )
-        return told + "."
     if advice.qualifies and advice.quota > 0.0:
         at_least = " (the largest examined; more may qualify)" if advice.at_edge else ""
         span = f" for {words.years(table.horizon)}" if table.horizon < 5 else ""
@@ -57,7 +73,9 @@ def _recommended_headline(table: QuotaTable, quota: str) -> str:
         one = "one animal" if table.record.unit == "animals" else f"the least printable amount of {what}"
         return f"Close the season: what you accept allows less than {one} a year."
     if advice.further_runs or least_risk(table.curve, table.horizon) > 0.0:
-        return "No take does not meet what you accept either, and risk falls as more is taken: look at the rates first."
+        return (
+            "Even without a take what you accept is not met, but risk falls as more is taken: look at the rates first."
+        )
     return f"Close the season: no quota of {what}, and not even closure, meets what you accept."
 
 
@@ -102,20 +120,23 @@ def findings(table: QuotaTable) -> list[str]:
 def _rule_sentences(table: QuotaTable) -> list[str]:
     """What the rule in force does, where it is not the recommended quota."""
     record, aim = table.record, table.recommendation.criterion
-    p, se = table.rule_risk
-    against = "within" if p <= table.tolerance else "above"
     quota = words.number(table.first_quota, record.unit)
     under = "Under the rule" if table.rule.feedback else f"With {quota} a year"
-    told = [
-        f"{under} the chance of {_below_words(record)} in {words.years(table.horizon)} is {words.probability(p)} "
-        f"({words.error(se)} Monte Carlo), {against} your tolerance of {words.percent(table.tolerance)}."
-    ]
+    told = []
     if aim.question != "limit":
         chance, se = table.rule_chance(aim.event, aim.year)
         told.append(
             f"{under} the chance of {_event_words(record, aim)} is {words.probability(chance)} "
-            f"({words.error(se)}); {_asked_words(aim)}."
+            f"({words.error(se)} Monte Carlo); {_asked_words(aim)}."
         )
+    if aim.question == "recovery":
+        return [*told, _collapse_sentence(table)]
+    p, se = table.rule_risk
+    against = "within" if p <= table.tolerance else "above"
+    told.append(
+        f"{under} the chance of {_below_words(record)} in {words.years(table.horizon)} is {words.probability(p)} "
+        f"({words.error(se)} Monte Carlo), {against} your tolerance of {words.percent(table.tolerance)}."
+    )
     return told
 
 
@@ -132,7 +153,7 @@ def _advice_sentences(table: QuotaTable) -> list[str]:
     ]
     if not advice.qualifies:
         side = "below what is asked" if aim.at_least else "above the tolerance"
-        told.append(f"That is {100.0 * advice.miss:.2g} percentage points {side}.")
+        told.append(f"That is {100.0 * advice.miss:.3g} percentage points {side}.")
     others = [] if advice.quota == 0.0 else [f"{words.probability(advice.zero[1])} without a take"]
     if advice.present is not None and advice.present[0] not in (0.0, advice.quota):
         present = words.number(advice.present[0], record.unit)
@@ -147,7 +168,7 @@ def _limit_sentence(table: QuotaTable) -> str:
     record, advice = table.record, table.recommendation
     year = advice.criterion.year
     soon, _ = table.curve.at("ever_below_limit", advice.quota, year)
-    told = f"The chance of {_below_words(record)} is {words.probability(soon)} in those {words.years(year)}"
+    told = f"The chance of {_below_words(record)} is {words.probability(soon)} in {words.years(year)}"
     later, _ = advice.limit_risk
     if table.horizon > year:
         told += f", and {words.probability(later)} if the same quota goes on for {words.years(table.horizon)}"

@@ -42,9 +42,9 @@ class QuotaTable:
 
     Attributes
     ----------
-    record, rates, rule
-        ``rule`` is the record's or the caller's; else the recommended quota every year (where no cull gets
-        under a ceiling in time: the present quota, or none).
+    record, rates, rule, given
+        ``given`` tells whether the caller or the record gave the rule; else it is the recommended quota every
+        year (where no cull gets under a ceiling in time: the present quota, or none).
     recommendation : Recommendation
         The constant legal quota read off the risk curve (also where a rule with feedback is in force).
     curve : RiskCurve
@@ -76,6 +76,7 @@ class QuotaTable:
     record: Record
     rates: Rates
     rule: Rule
+    given: bool
     recommendation: Recommendation
     curve: RiskCurve
     without_losses: tuple[float, bool] | None
@@ -201,6 +202,7 @@ def make_quota_table(
     check_horizon(horizon)
     if rule is None and record.rule is not None:
         rule = rule_of(record.rule)
+    given = rule is not None
     if rule is not None:
         check_printable(rule, record.unit)
     question = question or pick_question(record, rates)
@@ -226,6 +228,7 @@ def make_quota_table(
         record=record,
         rates=rates,
         rule=rule,
+        given=given,
         recommendation=advice,
         curve=curve,
         without_losses=without,

@@ -170,9 +170,13 @@ class _Walk:
         history = self.record.history
         reported = dict(zip(history.years, history.removals, strict=True)).get(year)
         if reported is None:
+            quota_year = self.record.quota_year
+            added = (
+                f", in a row of its own, and state first_quota_year = {quota_year}" if year > history.years[-1] else ""
+            )
             raise RatesError(
                 f"removals of {year} are missing: each draw is projected from the count through every year "
-                f"to the quota of {self.record.quota_year}. Enter the removals of {year} (or the best estimate)"
+                f"to the quota of {quota_year}. Enter the removals of {year} (or the best estimate){added}"
             )
         return total_removals(self.table, reported)
 

@@ -26,8 +26,8 @@ def _crashing(record: Record, rates: Rates) -> np.ndarray:
 
 
 def _crowded(record: Record, rates: Rates) -> np.ndarray:
-    """Draws in which today's abundance is more than twice the carrying capacity."""
-    return rates.column("abundance") > 2.0 * rates.column("K")
+    """Other draws in which today's abundance is more than twice the carrying capacity."""
+    return (rates.column("abundance") > 2.0 * rates.column("K")) & ~_crashing(record, rates)
 
 
 def _crossed(record: Record, rates: Rates) -> np.ndarray:
@@ -62,4 +62,8 @@ _NOTES = (
 def cautions(record: Record, rates: Rates) -> tuple[str, ...]:
     """Notes on draws that are likely not meant, each with the share of draws it concerns."""
     shares = ((float(np.mean(concerns(record, rates))), text) for concerns, text in _NOTES)
-    return tuple(f"in {100.0 * share:.2g}% of the draws {text}" for share, text in shares if share >= NOTABLE)
+    return tuple(f"in {_share_words(share)} {text}" for share, text in shares if share >= NOTABLE)
+
+
+def _share_words(share: float) -> str:
+    return "all draws" if share > 0.9995 else f"{100.0 * share:.3g}% of the draws"

@@ -147,6 +147,14 @@ def moment(survey: Values, top: Values) -> Any:
     return get(survey, "when") if "when" in survey else get(top, "count_when")
 
 
+def _removals_cure(record: Record, missing: list[int]) -> str:
+    """What to do about missing removals; a row added at the end must not move the quota year on."""
+    cure = "Write the removals of these years (an estimate, where nothing else is known)"
+    if missing[-1] > record.history.years[-1]:
+        cure += f", in rows of their own, and state first_quota_year = {record.quota_year}"
+    return cure + "."
+
+
 def warn_of_abundance(record: Record, report_toml: Report, report_history: Report) -> None:
     """Warn where this year's abundance cannot be had: no usable absolute count, or removals missing since."""
     latest = latest_absolute_count(record)
@@ -165,5 +173,5 @@ def warn_of_abundance(record: Record, report_toml: Report, report_history: Repor
             f"nothing for {', '.join(map(str, missing))}",
             f"removals from the latest absolute count ({year}) to the quota year ({record.quota_year}) must be "
             "known before a quota can be worked out",
-            "Write the removals of these years (an estimate, where nothing else is known).",
+            _removals_cure(record, missing),
         )

@@ -47,10 +47,10 @@ class Distribution:
     def __str__(self) -> str:
         values = dict(self.parameters)
         if self.kind == "fixed":
-            return f"{values['value']:g}"
+            return f"{values['value']:.10g}"
         if self.kind == "90% between":
-            return f"90% between {values['low']:g} and {values['high']:g}"
-        return f"{self.kind} ({', '.join(f'{k} {v:g}' for k, v in self.parameters)})"
+            return f"90% between {values['low']:.10g} and {values['high']:.10g}"
+        return f"{self.kind} ({', '.join(f'{k} {v:.10g}' for k, v in self.parameters)})"
 
 
 def fixed(value: float) -> Distribution:

@@ -55,7 +55,7 @@ def test_a_constant_quota_stops_under_the_limit_or_the_ceiling_it_serves(tables,
 
 
 @pytest.mark.parametrize(
-    ("span", "step"), [(16.0, 1.0), (17.0, 2.0), (33.0, 2.5), (48.0, 3.0), (50.0, 4.0), (1600.0, 100.0), (0.5, 0.05)]
+    ("span", "step"), [(16.0, 1.0), (17.0, 2.0), (33.0, 2.5), (48.0, 3.0), (50.0, 4.0), (1600.0, 100.0), (0.5, 0.04)]
 )
 def test_steps_are_round(span, step):
     assert nice_step(span) == pytest.approx(step)

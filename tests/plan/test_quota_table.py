@@ -8,6 +8,7 @@ import pytest
 from harvest.errors import SettingsError
 from harvest.futures import Rule, fixed_quota
 from harvest.futures.rounding import round_down
+from harvest.plan.rows import compare_quotas
 from harvest.plan.sentences import findings, headline
 from harvest.record.model import ByYear, Distribution, Level, fixed
 from tests.plan.conftest import table_of
@@ -140,14 +141,38 @@ def test_nothing_within_tolerance_is_a_closure_with_its_miss(demos):
     assert "percentage points above the tolerance" in " ".join(findings(table))
 
 
-def test_no_cull_reaches_an_impossible_ceiling(demos):
-    objectives = replace(demos["geese"].objectives, ceiling=Level(1e-3), limit=None, reduction=ByYear(1, 0.99))
+def test_a_tight_aim_extends_the_curve_until_a_cull_reaches_it(demos):
+    objectives = replace(demos["geese"].objectives, ceiling=Level(200.0), limit=None, reduction=ByYear(1, 0.99))
     losses = replace(demos["geese"].losses, implementation_cv=0.8)
     table = table_of(replace(demos["geese"], objectives=objectives, losses=losses))
-    assert not table.recommendation.qualifies
-    assert "No cull examined" in headline(table)
-    assert table.rule == fixed_quota(table.record.present_quota)
-    assert "recommended" not in "".join(table.compared["what"])
+    advice = table.recommendation
+    assert advice.qualifies
+    assert advice.probability >= 0.99
+    assert advice.quota > 10_000
+    assert "but that risks falling below the collapse level" in headline(table)
+
+
+def test_where_no_cull_reaches_the_ceiling_none_is_recommended(tables):
+    table = tables["geese"]
+    failed = replace(table, recommendation=replace(table.recommendation, qualifies=False), rule=fixed_quota(900.0))
+    assert "No cull examined" in headline(failed)
+    named = compare_quotas(failed.record, failed.curve, failed.recommendation, failed.horizon)
+    assert "recommended" not in "".join(named["what"])
+
+
+def test_a_rule_is_judged_by_what_is_asked_of_the_population(demos):
+    geese = table_of(demos["geese"], rule=Rule("fixed share", (0.02,)))
+    assert "its chance of being under 9,000 geese within 5 years is" in headline(geese)
+    aims = replace(demos["deer"].objectives, limit=Level(3000.0), recovery=ByYear(8, 0.7), target=None)
+    below = table_of(replace(demos["deer"], objectives=aims), rule=fixed_quota(20.0))
+    assert headline(below) == "A legal quota of 20 red deer a year, as asked."
+    assert "chance of collapse" in " ".join(findings(below))
+
+
+def test_no_cull_is_needed_where_the_population_is_under_its_ceiling(demos):
+    aims = replace(demos["geese"].objectives, ceiling=Level(60_000.0))
+    table = table_of(replace(demos["geese"], objectives=aims), question="reduction")
+    assert headline(table) == "No cull is needed to get under the ceiling in time."
 
 
 def test_the_tolerance_and_horizon_given_are_the_ones_used(demos):

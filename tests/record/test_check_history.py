@@ -172,3 +172,12 @@ def test_a_thousands_mark_written_as_a_point_is_asked_about() -> None:
     faults = problems_of(TOML, edited(CSV, "2021,90,720", "2021,90,1.720"))
     assert told(faults, "warning", "row 4 (year 2021)", "If 1720 was meant")
     assert not told(problems_of(TOML, edited(CSV, "2021,90,720", "2021,90,720.5")), "warning", "was meant")
+
+
+def test_a_row_added_at_the_end_comes_with_the_quota_year_it_serves() -> None:
+    """With a lag of 2 an added row would move the quota year on by one, so the cure states the year."""
+    toml = edited(TOML, "lag = 0", "lag = 2")
+    csv = edited(CSV, "2023,,735,0.15,11,", "2023,95,735,0.15,11,")
+    assert told(problems_of(toml, csv), "warning", "nothing for 2024", "first_quota_year = 2025")
+    mended = edited(toml, "lag = 2", "lag = 2\nfirst_quota_year = 2025")
+    assert not told(problems_of(mended, csv + "2024,95,,,,\n"), "warning", "nothing for")
