@@ -137,8 +137,10 @@ def _measures(prepared: Prepared, tally: Tally, years: int) -> pd.DataFrame:
     s, per_draw = tally.summary, prepared.futures_per_draw
 
     def spread() -> np.ndarray:
-        mean = s[kernel.TOTAL_LEGAL] / years
-        return np.sqrt(np.maximum(s[kernel.TOTAL_SQUARES] / years - mean * mean, 0.0))
+        variance, square = s[kernel.TOTAL_SQUARES] / years, s[kernel.TOTAL_LEGAL] / years
+        variance -= np.square(square, out=square)
+        np.maximum(variance, 0.0, out=variance)
+        return np.sqrt(variance, out=variance)
 
     made: dict[str, Callable[[], np.ndarray]] = {
         "mean yearly legal take": lambda: s[kernel.TOTAL_LEGAL] / years,
