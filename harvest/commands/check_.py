@@ -7,15 +7,15 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import FOLDER, JSON, SEED, as_json, check_targets, save, tell
+from harvest.commands.options import FOLDER, JSON, NOTED_SEED, as_json, check_targets, save, tell
 
 
 @click.command("check")
 @FOLDER
-@SEED
+@NOTED_SEED
 @JSON
 def command(folder: Path, seed: int, json_file: Path | None) -> None:
-    """Check the record in FOLDER and tell every problem with its cure (nothing is drawn; the seed is noted)."""
+    """Check the record in FOLDER and tell every problem with its cure."""
     from harvest import __version__
     from harvest.commands import show
     from harvest.errors import CAUTION

@@ -7,12 +7,13 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import JSON, as_json, save, tell
+from harvest.commands.options import JSON, NOTED_SEED, as_json, save, tell
 
 
 @click.command("keys")
+@NOTED_SEED
 @JSON
-def command(json_file: Path | None) -> None:
+def command(seed: int, json_file: Path | None) -> None:
     """Explain every key of the JSON files that the other commands write with --json."""
     from harvest.commands.json_keys import KEYS
 

@@ -6,14 +6,15 @@ from pathlib import Path
 
 import click
 
-from harvest.commands.options import FOLDER, JSON, as_json, save, tell
+from harvest.commands.options import FOLDER, JSON, NOTED_SEED, as_json, save, tell
 
 
 @click.command("new")
 @FOLDER
 @click.option("--demo", help="Copy a demo record: deer, lake or geese; without it, a commented template.")
+@NOTED_SEED
 @JSON
-def command(folder: Path, demo: str | None, json_file: Path | None) -> None:
+def command(folder: Path, demo: str | None, seed: int, json_file: Path | None) -> None:
     """Make a new record in FOLDER: record.toml, which explains itself, and history.csv."""
     from harvest import __version__
     from harvest.errors import CAUTION
@@ -24,6 +25,7 @@ def command(folder: Path, demo: str | None, json_file: Path | None) -> None:
     content = {
         "kind": "new",
         "version": __version__,
+        "seed": seed,
         "caution": CAUTION,
         "demo": demo,
         "files": ["record.toml", "history.csv"],

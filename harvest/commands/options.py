@@ -16,6 +16,9 @@ if TYPE_CHECKING:
 
 FOLDER = click.argument("folder", type=click.Path(path_type=Path))
 SEED = click.option("--seed", type=int, default=0, show_default=True, help="Seed of all random numbers.")
+NOTED_SEED = click.option(
+    "--seed", type=int, default=0, show_default=True, help="Taken as everywhere; nothing is drawn here."
+)
 DRAWS = click.option(
     "--draws", type=int, default=10_000, show_default=True, help="States of nature to draw from the stated ranges."
 )

@@ -159,7 +159,10 @@ def test_help_names_every_command_and_the_version(deer):
     assert unwrapped(CAUTION) in unwrapped(said)
     assert harvest("--version").stdout.strip().endswith(__version__)
     for command in COMMANDS:
-        assert harvest(command, "--help").returncode == 0
+        told = harvest(command, "--help")
+        assert told.returncode == 0
+        assert "--seed" in told.stdout
+        assert "--json" in told.stdout
 
 
 def test_the_first_run_says_that_it_compiles_and_shows_progress(tmp_path, deer):
