@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 import secrets
 import sys
+import tempfile
 from contextlib import suppress
 from pathlib import Path
 
@@ -67,8 +68,28 @@ def write_whole(path: Path, data: bytes) -> None:
             raise
         flush_folder(path.parent)
     except (OSError, ValueError) as error:
-        reason = getattr(error, "strerror", None) or str(error)
-        raise SettingsError(
-            f"{str(path)!r} cannot be written: {reason}. Check the folder's name and the right "
-            "to write there; nothing was changed."
-        ) from error
+        raise _refusal(path, error) from error
+
+
+def check_writable(path: Path) -> None:
+    """Find out, before long work for its sake, whether a file can be written; its folder is made.
+
+    Raises
+    ------
+    SettingsError
+        When it cannot.
+    """
+    try:
+        path.parent.mkdir(parents=True, exist_ok=True)
+        with tempfile.TemporaryFile(dir=path.parent):
+            pass
+    except (OSError, ValueError) as error:
+        raise _refusal(path, error) from error
+
+
+def _refusal(path: Path, error: Exception) -> SettingsError:
+    reason = getattr(error, "strerror", None) or str(error)
+    return SettingsError(
+        f"{str(path)!r} cannot be written: {reason}. Check the folder's name and the right "
+        "to write there; nothing was changed."
+    )

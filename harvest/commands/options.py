@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import sys
-import tempfile
 from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -92,26 +91,12 @@ class Progress:
 
 
 def check_targets(*files: Path | None) -> None:
-    """Find out before the work begins whether the files that it is for can be written.
-
-    Raises
-    ------
-    SettingsError
-        Where one cannot.
-    """
-    from harvest.errors import SettingsError
+    """Find out before the work begins whether the files that it is for can be written."""
+    from harvest.writing import check_writable
 
     for file in files:
         if file is not None:
-            try:
-                file.parent.mkdir(parents=True, exist_ok=True)
-                with tempfile.TemporaryFile(dir=file.parent):
-                    pass
-            except OSError as error:
-                raise SettingsError(
-                    f"{str(file)!r} cannot be written: {error.strerror or error}. Check the folder's name and the "
-                    "right to write there."
-                ) from error
+            check_writable(file)
 
 
 def save(files: dict[Path, bytes]) -> list[str]:

@@ -49,7 +49,7 @@ def command(folder: Path, seed: int, draws: int, json_file: Path | None, quota: 
     )
     click.echo(
         f"In {words.kind(record)}. Collapse: below {words.collapse_words(record)}. "
-        f"The limit: {words.limit_words(record).rstrip(',')}."
+        f"The limit: {words.limit_words(record)}."
     )
     click.echo()
     show.paragraph(f"Chance that the quota is beyond the fold: {words.probability(found.beyond_fold)}.")

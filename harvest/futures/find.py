@@ -24,10 +24,9 @@ from harvest.futures.recommend import (
 from harvest.futures.risk import (
     POINTS,
     RiskCurve,
+    coarse_quotas,
     curve_years,
-    highest_quota,
     trace_prepared,
-    with_zero_and_present,
 )
 from harvest.futures.rounding import round_down, round_up
 from harvest.rates import Rates
@@ -53,6 +52,22 @@ def check_resolution(criterion: Criterion, draws: int) -> None:
             f"a probability of {criterion.bound:g} cannot be told with {draws:,} draws: draw at least "
             f"{int(np.ceil(FEWEST_EVENTS / rare)):,}, or ask for less"
         )
+
+
+def settle_criterion(
+    record: Record, rates: Rates, question: str, *, tolerance: float | None = None, horizon: int | None = None
+) -> Criterion:
+    """The criterion of a question, once it is seen that these rates can answer it.
+
+    Raises
+    ------
+    SettingsError
+        From :func:`harvest.futures.recommend.criterion_of`, ``check_question`` or :func:`check_resolution`.
+    """
+    criterion = criterion_of(record, question, tolerance=tolerance, horizon=horizon)
+    check_question(record, rates, question)
+    check_resolution(criterion, len(rates))
+    return criterion
 
 
 def bracket(curve: RiskCurve, criterion: Criterion) -> tuple[float, float] | None:
@@ -94,7 +109,6 @@ def find_prepared(
     pool: ThreadPoolExecutor,
     *,
     seed: int,
-    losses: bool = True,
     points: int = POINTS,
     progress: Progress | None = None,
 ) -> RiskCurve:
@@ -102,10 +116,9 @@ def find_prepared(
     record, unit = prepared.record, prepared.record.unit
 
     def trace(quotas: np.ndarray, report: Progress | None = None) -> RiskCurve:
-        return trace_prepared(prepared, quotas, years, pool, seed=seed, losses=losses, progress=report)
+        return trace_prepared(prepared, quotas, years, pool, seed=seed, progress=report)
 
-    top = highest_quota(record, prepared.rates)
-    curve = trace(with_zero_and_present(record, np.linspace(0.0, top, points)), progress)
+    curve = trace(coarse_quotas(record, prepared.rates, points), progress)
     for _ in range(PASSES):
         if not _ends_too_soon(curve, criterion):
             break
@@ -148,9 +161,7 @@ def find_quota(
     SettingsError
         A setting out of range, or a tolerance too small for the number of draws.
     """
-    criterion = criterion_of(record, question, tolerance=tolerance, horizon=horizon)
-    check_question(record, rates, question)
-    check_resolution(criterion, len(rates))
+    criterion = settle_criterion(record, rates, question, tolerance=tolerance, horizon=horizon)
     years = max(curve_years(record), record.objectives.horizon if horizon is None else horizon)
     with workers(threads) as pool:
         curve = find_prepared(

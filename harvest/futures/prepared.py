@@ -28,6 +28,7 @@ class Prepared:
     draws: np.ndarray
     blocks: np.ndarray
     futures_per_draw: int
+    losses: bool
     tau: float
     bias: float
     base: int
@@ -109,6 +110,7 @@ def prepare(record: Record, rates: Rates, *, futures_per_draw: int = 1, losses: 
         draws=draws,
         blocks=make_blocks(rates.codes, kernel.LANES // futures_per_draw),
         futures_per_draw=futures_per_draw,
+        losses=losses,
         tau=tau,
         bias=bias,
         base=base_of(float(draws[[kernel.K, kernel.START]].max())),

@@ -16,7 +16,7 @@ from harvest.futures.rules import Rule
 from harvest.kernels import projection as kernel
 from harvest.kernels.histogram import quantiles
 from harvest.rates import Rates
-from harvest.rates.spread import LEVELS
+from harvest.rates.spread import LEVEL_NAMES, LEVELS
 from harvest.record.model import Record
 
 #: Yearly probabilities, by their column in the table of years.
@@ -31,7 +31,6 @@ EVENT_COLUMNS = {
     "closed": kernel.CLOSED,
     "at_target": kernel.AT_TARGET,
 }
-_QUANTILE_NAMES = ("low90", "low50", "median", "high50", "high90")
 
 
 @dataclass(frozen=True)
@@ -72,14 +71,18 @@ class Future:
         return float(self.measures.set_index("measure").loc[name, "value"])
 
 
+def _draws_error(mean: np.ndarray, mean_square: np.ndarray, draws: int) -> np.ndarray:
+    """Standard error of a mean over draws, from the mean of the draws' squares."""
+    return np.sqrt(np.maximum(mean_square - mean * mean, 0.0) / max(draws - 1, 1))
+
+
 def event_error(p: np.ndarray, squares: np.ndarray, draws: int, per_draw: int) -> np.ndarray:
     """Standard error of a probability, clustered by draw: sd of the draws' shares over √draws.
 
     Where no future or every future shows the event, that estimate is zero and says too much: the error is then
     that of one event more among ``draws`` + 2 (Agresti & Coull 1998, doi:10.1080/00031305.1998.10480550).
     """
-    mean_square = p if per_draw == 1 else squares / draws
-    error = np.sqrt(np.maximum(mean_square - p * p, 0.0) / max(draws - 1, 1))
+    error = _draws_error(p, p if per_draw == 1 else squares / draws, draws)
     rare = 1.0 / (draws + 2)
     return np.where(error > 0.0, error, np.sqrt(rare * (1.0 - rare) / draws))
 
@@ -93,7 +96,7 @@ def clustered(values: np.ndarray, per_draw: int) -> tuple[float, float]:
 
 def count_year(record: Record, quota_year: int) -> int:
     """The year of the count that first shows what the take of ``quota_year`` did."""
-    return quota_year if record.season == "short" and record.count_when == "after" else quota_year + 1
+    return quota_year if record.counts_after else quota_year + 1
 
 
 def _year_quantiles(tally: Tally, row: int, base: int) -> np.ndarray:
@@ -116,13 +119,12 @@ def _years_table(prepared: Prepared, tally: Tally, rule: Rule, years: int) -> pd
     for row, name in enumerate(("abundance", "removals", "quota")):
         mean = tally.sums[:, row] / futures
         table[f"{name}_mean"] = mean
-        error = np.sqrt(np.maximum(tally.sum_squares[:, row] / draws - mean**2, 0.0) / max(draws - 1, 1))
-        table[f"{name}_mean_se"] = error
+        table[f"{name}_mean_se"] = _draws_error(mean, tally.sum_squares[:, row] / draws, draws)
         if name == "quota" and not rule.feedback:
             levels = np.full((years, len(LEVELS)), rule.settings[0])
         else:
             levels = _year_quantiles(tally, row, prepared.base)
-        for i, quantile_name in enumerate(_QUANTILE_NAMES):
+        for i, quantile_name in enumerate(LEVEL_NAMES):
             table[f"{name}_{quantile_name}"] = levels[:, i]
     table["legal_mean"] = tally.sums[:, kernel.LEGAL] / futures
     for name, row in EVENT_COLUMNS.items():

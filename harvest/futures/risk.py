@@ -108,6 +108,11 @@ def with_zero_and_present(record: Record, quotas: Sequence[float] | np.ndarray) 
     return check_quotas(np.concatenate([[0.0], present, np.asarray(quotas, float)]))
 
 
+def coarse_quotas(record: Record, rates: Rates, points: int) -> np.ndarray:
+    """The quotas of a curve before it is refined: evenly spaced to :func:`highest_quota`, zero and the present one."""
+    return with_zero_and_present(record, np.linspace(0.0, highest_quota(record, rates), points))
+
+
 def trace_prepared(
     prepared: Prepared,
     quotas: np.ndarray,
@@ -115,7 +120,6 @@ def trace_prepared(
     pool: ThreadPoolExecutor,
     *,
     seed: int,
-    losses: bool = True,
     progress: Progress | None = None,
 ) -> RiskCurve:
     """The risk curve of rates that are already laid out, on a pool of workers."""
@@ -130,7 +134,7 @@ def trace_prepared(
             se[name][i] = event_error(p, tally.event_squares[:, row], draws, per_draw)
         if progress:
             progress(i + 1, quotas.size)
-    rates = prepared.rates
+    rates, losses = prepared.rates, prepared.losses
     return RiskCurve(quotas, probability, se, rates.first_year, draws, per_draw, seed, losses, rates.record_digest)
 
 
@@ -173,16 +177,13 @@ def trace_risk(
     """
     if points < 2:
         raise SettingsError(f"{points} points are too few for a risk curve: give at least 2")
-    if quotas is None:
-        quotas = np.linspace(0.0, highest_quota(record, rates), points)
-    given = with_zero_and_present(record, quotas)
+    chosen = coarse_quotas(record, rates, points) if quotas is None else with_zero_and_present(record, quotas)
     with workers(threads) as pool:
         return trace_prepared(
             prepare(record, rates, futures_per_draw=futures_per_draw, losses=losses),
-            given,
+            chosen,
             curve_years(record) if years is None else years,
             pool,
             seed=rates.seed if seed is None else seed,
-            losses=losses,
             progress=progress,
         )

@@ -30,3 +30,8 @@ def round_up(value: float, unit: str) -> float:
     """The smallest whole number of animals, or three significant figures of tonnes, not below ``value``."""
     step = _step(value, unit)
     return _rounded(value, unit, math.ceil(value / step - SLACK), step)
+
+
+def precision_words(unit: str) -> str:
+    """To what a quota is rounded."""
+    return "whole animals" if unit == "animals" else "three significant figures"

@@ -107,7 +107,7 @@ def _evidence(record: Record, rates: Rates) -> Pairs:
 def _aims(record: Record, table: QuotaTable) -> Pairs:
     aims, aim = record.objectives, table.recommendation.criterion
     pairs = [
-        ("Limit", words.limit_words(record).rstrip(",")),
+        ("Limit", words.limit_words(record)),
         ("Collapse level", words.collapse_words(record)),
         ("Horizon", f"{words.years(table.horizon)} of quotas from {table.rates.first_year}"),
         ("Risk tolerance", words.percent(table.tolerance)),
@@ -146,8 +146,8 @@ def record_pairs(record: Record) -> Pairs:
     return [(k, v) for k, v in pairs if v] + [(k.replace("_", " ").capitalize(), v) for k, v in record.plan]
 
 
-def provenance(table: QuotaTable, *, dated: bool = True) -> Pairs:
-    """What a reviewer needs to run it again: (item, value); the date only where it is wanted."""
+def provenance(table: QuotaTable) -> Pairs:
+    """What a reviewer needs to run it again, and the day: (item, value)."""
     pairs = [
         ("Harvest version", table.version),
         ("Record digest (SHA-256)", table.rates.record_digest),
@@ -159,4 +159,4 @@ def provenance(table: QuotaTable, *, dated: bool = True) -> Pairs:
         ("Python", platform.python_version()),
         *((name, installed(name)) for name in ("numpy", "scipy", "pandas", "numba")),
     ]
-    return [*pairs, ("Date", date.today().isoformat())] if dated else pairs
+    return [*pairs, ("Date", date.today().isoformat())]

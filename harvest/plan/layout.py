@@ -16,7 +16,7 @@ Value = str | float | None
 
 @dataclass(frozen=True)
 class Part:
-    """One table: ``kinds`` are "text", "year", "amount", "probability" or "share"."""
+    """One table: ``kinds`` are "text", "year", "amount", "probability", "error", "share" or "index"."""
 
     title: str
     note: str
@@ -43,22 +43,10 @@ def _quota_part(table: QuotaTable) -> Part:
         "Ever collapsed by then",
     )
     kinds = ("year", *["amount"] * (4 if feedback else 2), "year", *["amount"] * 3, *["probability"] * 3)
-    names = (
-        "quota_year",
-        "quota",
-        *(("quota_low90", "quota_high90") if feedback else ()),
-        "removals",
-        "count_year",
-        "abundance",
-        "abundance_low90",
-        "abundance_high90",
-        "below_limit",
-        "ever_below_limit",
-        "ever_collapsed",
-    )
+    names = [n for n in rows.columns if feedback or n not in ("quota_low90", "quota_high90")]
     values = tuple(tuple(float(row[n]) for n in names) for _, row in rows.iterrows())
     note = f"In {what}; abundance {words.moment(record)}, median and 90% interval over futures. "
-    note += f"The limit is {words.limit_words(record).rstrip(',')}; collapsed is below {words.collapse_words(record)}."
+    note += f"The limit is {words.limit_words(record)}; collapsed is below {words.collapse_words(record)}."
     first = table.rates.first_year
     if table.awaits_count:
         note += f" The quota of {first} follows from a count that is not made yet: quotas are medians of what may come."
@@ -113,7 +101,7 @@ def _steps_part(table: QuotaTable) -> Part:
 
 
 def _compared_part(table: QuotaTable) -> Part:
-    limit = words.limit_words(table.record).rstrip(",")
+    limit = words.limit_words(table.record)
     names = ["quota", "what", "ever_below_limit", "ever_below_limit_se", "ever_collapsed"]
     kinds = ["amount", "text", "probability", "error", "probability"]
     headings = ["Legal quota a year", "", "Ever below limit", "± Monte Carlo", "Ever collapsed"]

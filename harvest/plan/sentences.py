@@ -6,7 +6,7 @@ from harvest.futures.recommend import Criterion, Recommendation
 from harvest.plan import words
 from harvest.plan.rows import least_risk
 from harvest.plan.table import QuotaTable
-from harvest.record.model import Record
+from harvest.record.model import Level, Record
 
 
 def headline(table: QuotaTable) -> str:
@@ -112,8 +112,9 @@ def findings(table: QuotaTable) -> list[str]:
     if table.recommendation.criterion.question != "limit" and table.is_recommended:
         recovery = table.recommendation.criterion.question == "recovery"
         told.append(_collapse_sentence(table) if recovery else _limit_sentence(table))
-    if table.record.objectives.target is not None:
-        told.append(_target_sentence(table))
+    target = table.record.objectives.target
+    if target is not None:
+        told.append(_target_sentence(table, target))
     return told + _warnings(table)
 
 
@@ -187,13 +188,12 @@ def _collapse_sentence(table: QuotaTable) -> str:
     )
 
 
-def _target_sentence(table: QuotaTable) -> str:
+def _target_sentence(table: QuotaTable, target: Level) -> str:
     """The chance of standing at the target at the end of the horizon."""
-    stated = table.record.objectives.target
-    target = words.level(table.record, stated) if stated is not None else "the target"
     p, _ = table.rule_chance("at_target", table.horizon)
     when = "after 1 year" if table.horizon == 1 else f"at the end of {words.years(table.horizon)}"
-    return f"The chance of being at or above the target of {target} {when} is {words.probability(p)}."
+    level = words.level(table.record, target)
+    return f"The chance of being at or above the target of {level} {when} is {words.probability(p)}."
 
 
 def _warnings(table: QuotaTable) -> list[str]:

@@ -6,6 +6,7 @@ import numpy as np
 import pandas as pd
 
 from harvest.futures.recommend import Recommendation
+from harvest.futures.rounding import precision_words
 from harvest.futures.rules import Rule
 from harvest.kernels.codes import RECORDED, SIMULATED
 from harvest.plan import words
@@ -59,7 +60,7 @@ def quota_steps(record: Record, rates: Rates, advice: Recommendation, lossless: 
         rows.append((name, lossless, "total removals", why if found else why + ": no quota reaches it"))
     rows.append(("Losses", advice.exact, "legal take", _losses_words(record)))
     direction = "up" if question == "reduction" else "down"
-    how = "whole animals" if record.unit == "animals" else "three significant figures"
+    how = precision_words(record.unit)
     rows.append(("Rounding", advice.quota, "legal take", f"{how}, rounded {direction}"))
     return pd.DataFrame(rows, columns=COLUMNS)
 
@@ -74,7 +75,7 @@ def rule_steps(record: Record, rates: Rates, rule: Rule, first_quota: float, fir
     first_count : int
         What the rule has in the first year: RECORDED, SIMULATED or MISSING.
     """
-    how = "whole animals" if record.unit == "animals" else "three significant figures"
+    how = precision_words(record.unit)
     counted = rates.first_year - record.lag
     rows: list[tuple[str, float, str, str]] = []
     name, why = "The rule", f"{rule}; {how}, rounded down"

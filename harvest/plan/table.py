@@ -10,20 +10,18 @@ import pandas as pd
 from harvest import __version__
 from harvest.errors import SettingsError
 from harvest.futures.engine import Progress, workers
-from harvest.futures.find import check_resolution, find_prepared
+from harvest.futures.find import find_prepared, settle_criterion
 from harvest.futures.prepared import counts_ahead, prepare
 from harvest.futures.project import Future, project_prepared
 from harvest.futures.recommend import (
     Criterion,
     Recommendation,
-    check_question,
-    criterion_of,
     pick_question,
     read_off,
     recommend_quota,
 )
 from harvest.futures.risk import RiskCurve, curve_years
-from harvest.futures.rounding import round_down
+from harvest.futures.rounding import precision_words, round_down
 from harvest.futures.rules import Rule, fixed_quota, rule_of
 from harvest.kernels.codes import SIMULATED
 from harvest.plan.card import lookup_card
@@ -139,9 +137,8 @@ def check_horizon(years: int) -> None:
 def check_printable(rule: Rule, unit: str) -> None:
     """A fixed quota is one that can be printed: whole animals, three figures of tonnes."""
     if not rule.feedback and round_down(rule.settings[0], unit) != rule.settings[0]:
-        what = "whole animals" if unit == "animals" else "three significant figures"
         raise SettingsError(
-            f"a quota of {rule.settings[0]:.12g} cannot be printed: give {what}, "
+            f"a quota of {rule.settings[0]:.12g} cannot be printed: give {precision_words(unit)}, "
             f"such as {round_down(rule.settings[0], unit):.12g}"
         )
 
@@ -206,9 +203,7 @@ def make_quota_table(
     if rule is not None:
         check_printable(rule, record.unit)
     question = question or pick_question(record, rates)
-    check_question(record, rates, question)
-    criterion = criterion_of(record, question, tolerance=tolerance, horizon=horizon)
-    check_resolution(criterion, len(rates))
+    criterion = settle_criterion(record, rates, question, tolerance=tolerance, horizon=horizon)
     seed, years = rates.seed if seed is None else seed, max(curve_years(record), horizon)
     with workers(threads) as pool:
         prepared = prepare(record, rates, futures_per_draw=futures_per_draw)
@@ -220,7 +215,7 @@ def make_quota_table(
         if not rule.feedback and rule.settings[0] == advice.quota:
             lossless = prepare(record, rates, futures_per_draw=futures_per_draw, losses=False)
             telling = _telling(report, "the same without losses")
-            bare = find_prepared(lossless, criterion, years, pool, seed=seed, losses=False, progress=telling)
+            bare = find_prepared(lossless, criterion, years, pool, seed=seed, progress=telling)
             without = read_off(bare, criterion)[:2]
         telling = _telling(report, "the plan's years")
         future = project_prepared(prepared, rule, years, pool, seed=seed, progress=telling)

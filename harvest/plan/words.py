@@ -90,7 +90,7 @@ def limit_words(record: Record) -> str:
     """The lower limit in words, or what stands in for it."""
     if record.objectives.limit is not None:
         return level(record, record.objectives.limit)
-    return f"the collapse level, {collapse_words(record)} (no limit is stated),"
+    return f"the collapse level ({collapse_words(record)}; no limit is stated)"
 
 
 def collapse_words(record: Record) -> str:

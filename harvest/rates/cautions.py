@@ -4,8 +4,6 @@ from __future__ import annotations
 
 import numpy as np
 
-from harvest.kernels.growth import growth_array
-from harvest.population import by_draw
 from harvest.rates.table import Rates
 from harvest.record.model import Record
 
@@ -15,14 +13,13 @@ NOTABLE = 0.01
 
 def _overshooting(record: Record, rates: Rates) -> np.ndarray:
     """Draws whose yearly step is unstable at carrying capacity: S'(K) ≤ −1."""
-    r, k, s = rates.column("r"), rates.column("K"), rates.column("shape")
-    return 1.0 + by_draw(rates.codes, "slope", k, r, k, s) <= -1.0
+    return rates.step_slope(rates.column("K")) <= -1.0
 
 
 def _crashing(record: Record, rates: Rates) -> np.ndarray:
     """Draws in which today's abundance alone would bring the growth curve to zero within a year."""
-    x, r, k, s = (rates.column(name) for name in ("abundance", "r", "K", "shape"))
-    return (x > 0.0) & (x + growth_array(rates.codes, x, r, k, s) <= 0.0)
+    x = rates.column("abundance")
+    return (x > 0.0) & (x + rates.growth(x) <= 0.0)
 
 
 def _crowded(record: Record, rates: Rates) -> np.ndarray:

@@ -6,7 +6,9 @@ from dataclasses import asdict, dataclass
 
 import numpy as np
 
+#: Probabilities of the quantiles that tell a quantity, and their names.
 LEVELS = (0.05, 0.25, 0.5, 0.75, 0.95)
+LEVEL_NAMES = ("low90", "low50", "median", "high50", "high90")
 
 
 @dataclass(frozen=True)

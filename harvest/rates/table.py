@@ -9,6 +9,7 @@ import pandas as pd
 
 from harvest import __version__
 from harvest.errors import RatesError
+from harvest.kernels.growth import growth_array
 from harvest.population import BY_NAME, by_draw
 from harvest.rates.losses import removals_factor, total_removals
 from harvest.record.model import Level, Objectives
@@ -116,6 +117,15 @@ class Rates:
         """``msy``, ``peak`` (both need r, K, shape) or ``greatest_growth`` (r, shape) of each draw."""
         r, k, s = self.column("r"), self.column("K"), self.column("shape")
         return by_draw(self.codes, quantity, *((r, s) if quantity == "greatest_growth" else (r, k, s)))
+
+    def growth(self, n: np.ndarray) -> np.ndarray:
+        """g(N) of each draw at an abundance of its own, shape (draws,)."""
+        return growth_array(self.codes, n, self.column("r"), self.column("K"), self.column("shape"))
+
+    def step_slope(self, n: np.ndarray) -> np.ndarray:
+        """Slope 1 + g'(N) of each draw's yearly step at an abundance of its own, shape (draws,)."""
+        r, k, s = self.column("r"), self.column("K"), self.column("shape")
+        return 1.0 + by_draw(self.codes, "slope", n, r, k, s)
 
     def level(self, level: Level | None, absent: float) -> np.ndarray:
         """An abundance level draw by draw: absolute, or a fraction of each draw's K; ``absent`` for None."""

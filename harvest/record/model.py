@@ -235,6 +235,11 @@ class Record:
     private: tuple[str, ...] = ()
 
     @property
+    def counts_after(self) -> bool:
+        """Whether counts see what a short season's take leaves."""
+        return self.season == "short" and self.count_when == "after"
+
+    @property
     def quota_year(self) -> int:
         """The first year that needs a quota.
 

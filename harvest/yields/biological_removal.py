@@ -8,7 +8,6 @@ from dataclasses import dataclass
 import numpy as np
 
 from harvest.errors import SettingsError
-from harvest.kernels.growth import growth_array
 from harvest.rates import Rates
 from harvest.rates.approach import latest_usable_count, stated_bias
 from harvest.record.model import Record
@@ -63,7 +62,7 @@ def biological_removal(record: Record, rates: Rates) -> BiologicalRemoval:
     usable = latest_usable_count(record)
     growth = rates.closed_form("greatest_growth")
     low = record.low_abundance * rates.column("K")
-    at_low = growth_array(rates.codes, low, rates.column("r"), rates.column("K"), rates.column("shape")) / low
+    at_low = rates.growth(low) / low
     r_max = float(np.median(np.where(np.isinf(growth), at_low, growth)))
     n_best = usable.count / stated_bias(usable.survey)
     n_min = minimum_abundance(n_best, usable.cv)

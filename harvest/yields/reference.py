@@ -7,7 +7,6 @@ import pandas as pd
 
 from harvest.kernels.codes import SEASON_CODES
 from harvest.kernels.equilibria import equilibria, holding_yield
-from harvest.population import by_draw
 from harvest.rates import Rates
 from harvest.record.model import Record
 
@@ -52,8 +51,7 @@ def sustainable_today(record: Record, rates: Rates, x: np.ndarray | None = None)
 
 def slope_at(rates: Rates, base: np.ndarray) -> np.ndarray:
     """Slope m = 1 + g'(N) of the yearly step at a base abundance, under a fixed quota in either season."""
-    r, k, s = rates.column("r"), rates.column("K"), rates.column("shape")
-    return 1.0 + by_draw(rates.codes, "slope", base, r, k, s)
+    return rates.step_slope(base)
 
 
 def return_time(slope: np.ndarray) -> np.ndarray:

@@ -8,9 +8,8 @@ import numpy as np
 import pandas as pd
 
 from harvest import __version__
-from harvest.kernels.growth import growth_array
 from harvest.rates import Rates
-from harvest.rates.spread import LEVELS, Spread
+from harvest.rates.spread import LEVEL_NAMES, LEVELS, Spread
 from harvest.record.model import Record
 from harvest.yields.biological_removal import BiologicalRemoval, biological_removal
 from harvest.yields.reference import reference_values, sustainable_today
@@ -59,8 +58,7 @@ class YieldSummary:
 
 def standing_year(record: Record, rates: Rates) -> int:
     """The year of today's abundance at the count's moment: the latest before the first quota season's take."""
-    after = record.season == "short" and record.count_when == "after"
-    return rates.first_year - 1 if after else rates.first_year
+    return rates.first_year - 1 if record.counts_after else rates.first_year
 
 
 def present_take(record: Record) -> float | None:
@@ -77,17 +75,12 @@ def yield_curve(record: Record, rates: Rates, points: int = 41) -> pd.DataFrame:
     DataFrame
         ``points`` rows from 0 to 1.1 times the 95th percentile of K: ``abundance``, ``low90`` … ``high90``.
     """
-    after = record.season == "short" and record.count_when == "after"
     rows = []
     for n in np.linspace(0.0, 1.1 * float(np.quantile(rates.column("K"), 0.95)), points):
         x = np.full(len(rates), n)
-        if after:
-            r, k, s = rates.column("r"), rates.column("K"), rates.column("shape")
-            held = np.maximum(0.0, growth_array(rates.codes, x, r, k, s))
-        else:
-            held = sustainable_today(record, rates, x)
+        held = np.maximum(0.0, rates.growth(x)) if record.counts_after else sustainable_today(record, rates, x)
         rows.append([n, *np.quantile(held, LEVELS)])
-    return pd.DataFrame(rows, columns=["abundance", "low90", "low50", "median", "high50", "high90"])
+    return pd.DataFrame(rows, columns=["abundance", *LEVEL_NAMES])
 
 
 def summarise_yield(record: Record, rates: Rates) -> YieldSummary:
@@ -108,7 +101,6 @@ def summarise_yield(record: Record, rates: Rates) -> YieldSummary:
         with np.errstate(divide="ignore", invalid="ignore"):
             share = np.where(start > 0.0, rates.total_removals(take) / start, np.inf)
         rate = float(np.mean(share > draws["msy_share"].to_numpy()))
-    r, k, s = rates.column("r"), rates.column("K"), rates.column("shape")
     return YieldSummary(
         draws=draws,
         spreads=spreads,
@@ -116,7 +108,7 @@ def summarise_yield(record: Record, rates: Rates) -> YieldSummary:
         below_msy_abundance=float(np.mean(counted < draws["msy_abundance"].to_numpy())),
         above_msy_rate=rate,
         present_removals=take,
-        declines_unharvested=float(np.mean(growth_array(rates.codes, start, r, k, s) < 0.0)),
+        declines_unharvested=float(np.mean(rates.growth(start) < 0.0)),
         unstable=float(np.mean(draws["slope_at_capacity"].to_numpy() <= -1.0)),
         removal_bound=biological_removal(record, rates),
         seed=rates.seed,

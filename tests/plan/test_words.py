@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import pytest
 
@@ -44,3 +45,10 @@ def test_numbers(value, unit, told):
 def test_errors_have_one_figure():
     assert words.error(0.00216) == "±0.2%"
     assert words.error(0.0) == "<0.01%"
+
+
+def test_the_limit_s_words_fit_into_any_sentence(demos):
+    stated = demos["deer"]
+    none = replace(stated, objectives=replace(stated.objectives, limit=None))
+    assert words.limit_words(stated) == "1,200 red deer"
+    assert words.limit_words(none) == "the collapse level (10% of the carrying capacity; no limit is stated)"
