@@ -6,10 +6,14 @@ import os
 import secrets
 import sys
 import tempfile
-from contextlib import suppress
+from collections.abc import Iterator
+from contextlib import contextmanager, suppress
 from pathlib import Path
 
 from harvest.errors import SettingsError
+
+if sys.platform != "win32":
+    import fcntl
 
 
 def write_new(path: Path, data: bytes) -> None:
@@ -46,6 +50,21 @@ def flush_folder(folder: Path) -> None:
             os.fsync(handle)
         finally:
             os.close(handle)
+
+
+@contextmanager
+def hold_folder(folder: Path) -> Iterator[None]:
+    """Let only one process (or thread) at a time work in a folder, where the system can lock one."""
+    if sys.platform == "win32":
+        yield
+        return
+    handle = os.open(folder, os.O_RDONLY)
+    try:
+        with suppress(OSError):  # some network drives know no locks
+            fcntl.flock(handle, fcntl.LOCK_EX)
+        yield
+    finally:
+        os.close(handle)
 
 
 def write_whole(path: Path, data: bytes) -> None:

@@ -8,9 +8,7 @@ no harm and may be deleted.
 from __future__ import annotations
 
 import os
-import sys
-from collections.abc import Iterator
-from contextlib import contextmanager, suppress
+from contextlib import suppress
 from itertools import chain, count
 from pathlib import Path
 
@@ -23,10 +21,7 @@ from harvest.record.schema import HISTORY_FILE, MAX_RECORD_BYTES, RECORD_FILE
 from harvest.record.tables import parse_toml
 from harvest.record.values import FAULTY, check_value
 from harvest.record.write import record_to_files
-from harvest.writing import flush_folder, write_new
-
-if sys.platform != "win32":
-    import fcntl
+from harvest.writing import flush_folder, hold_folder, write_new
 
 _UNFINISHED = ".record.toml.unfinished"
 
@@ -53,7 +48,7 @@ def save_record(record: Record, folder: str | os.PathLike[str]) -> None:
     place = Path(folder)
     try:
         place.mkdir(parents=True, exist_ok=True)
-        with _hold(place):
+        with hold_folder(place):
             old = _check_old(place)
             name = _write_history(place, old, history_text.encode())
             if name != HISTORY_FILE:
@@ -69,21 +64,6 @@ def save_record(record: Record, folder: str | os.PathLike[str]) -> None:
             f"the record cannot be saved in {str(place)!r}: {reason}. "
             "Check the folder's name, the right to write there and the free space; nothing was changed."
         ) from error
-
-
-@contextmanager
-def _hold(folder: Path) -> Iterator[None]:
-    """Let only one process at a time save in the folder (where the system can lock a folder)."""
-    if sys.platform == "win32":
-        yield
-        return
-    handle = os.open(folder, os.O_RDONLY)
-    try:
-        with suppress(OSError):  # some network drives know no locks
-            fcntl.flock(handle, fcntl.LOCK_EX)
-        yield
-    finally:
-        os.close(handle)
 
 
 def _check_old(folder: Path) -> str | None:
