@@ -117,6 +117,8 @@ class Field:
         The names (of the curve or the rule in the same table) that allow or need this key.
     within_for : tuple of (str, Interval)
         A range of its own for some of those names.
+    label : str
+        Its name in forms, where the key itself does not say enough.
     """
 
     section: str
@@ -133,6 +135,12 @@ class Field:
     only_for: tuple[str, ...] = ()
     needed_for: tuple[str, ...] = ()
     within_for: tuple[tuple[str, Interval], ...] = ()
+    label: str = ""
+
+    @property
+    def title(self) -> str:
+        """What a form calls it: "Growth rate"."""
+        return self.label or self.key.replace("_", " ").capitalize()
 
     @property
     def path(self) -> str:
@@ -182,6 +190,8 @@ class Field:
             return ""
         if self.sort == "whole number":
             return f"whole number {self.within}"
+        if self.sort == "level":
+            return f"{self.within}, or a fraction of carrying capacity such as {{ of_capacity = 0.3 }}"
         return f"number or range, {self.within}" if self.sort == "distribution" else str(self.within)
 
 
