@@ -1,4 +1,4 @@
-"""Roots and crossing times, draw by draw: bisection on brackets that are known to hold, to the last bit.
+"""Roots and crossing times, draw by draw: within brackets that are known to hold, to the last bits.
 
 All arrays have one entry a draw; ``curve`` is int64, the rest float64. NaN means "there is none".
 """
@@ -11,20 +11,43 @@ from harvest.kernels.codes import AFTER, SHORT
 from harvest.kernels.compiling import kernel
 from harvest.kernels.growth import ALLEE, growth
 
+#: Twice the spacing of floating-point numbers near one.
+EPSILON = 4.5e-16
+
 
 @kernel()
-def crossing(curve, r, k, s, level, low, high):
-    """N between ``low`` and ``high`` where g(N) = level; g − level has opposite signs at the two ends."""
-    rising = growth(curve, low, r, k, s) < growth(curve, high, r, k, s)
+def crossing(kept, curve, r, k, s, level, low, high):
+    """N between ``low`` and ``high`` where kept·N + g(N) = level, to the last bits.
+
+    Chandrupatla's method (1997, doi:10.1016/S0965-9978(96)00051-8): inverse quadratic interpolation where it is
+    safe, bisection where it is not, always within a bracket. Where rounding hides the change of sign, the end that
+    comes closer.
+    """
+    x1, x2 = low, high
+    f1 = kept * x1 + growth(curve, x1, r, k, s) - level
+    f2 = kept * x2 + growth(curve, x2, r, k, s) - level
+    if (f1 < 0.0) == (f2 < 0.0):
+        return x1 if abs(f1) < abs(f2) else x2
+    t = 0.5
     for _ in range(400):
-        middle = 0.5 * (low + high)
-        if middle in (low, high):
-            break
-        if (growth(curve, middle, r, k, s) < level) == rising:
-            low = middle
+        x = x1 + t * (x2 - x1)
+        f = kept * x + growth(curve, x, r, k, s) - level
+        if (f < 0.0) == (f1 < 0.0):
+            x3, f3 = x1, f1
         else:
-            high = middle
-    return 0.5 * (low + high)
+            x3, f3 = x2, f2
+            x2, f2 = x1, f1
+        x1, f1 = x, f
+        best = x1 if abs(f1) < abs(f2) else x2
+        least = EPSILON * abs(best) / abs(x2 - x1) if x2 != x1 else 1.0
+        if least > 0.5 or f1 == 0.0 or f2 == 0.0:
+            return best
+        xi, phi = (x1 - x2) / (x3 - x2), (f1 - f2) / (f3 - f2)
+        t = 0.5
+        if phi * phi < xi and (1.0 - phi) * (1.0 - phi) < 1.0 - xi:
+            t = f1 / (f2 - f1) * (f3 / (f2 - f3)) + (x3 - x1) / (x2 - x1) * (f1 / (f3 - f1)) * (f2 / (f3 - f2))
+        t = min(max(t, least), 1.0 - least)
+    return best
 
 
 @kernel()
@@ -39,8 +62,8 @@ def equilibria(curve, r, k, s, peak, msy, removals, lower, upper):
             lower[i] = floor
             upper[i] = k[i]
         else:
-            lower[i] = crossing(curve[i], r[i], k[i], s[i], removals[i], floor, peak[i])
-            upper[i] = crossing(curve[i], r[i], k[i], s[i], removals[i], peak[i], k[i])
+            lower[i] = crossing(0.0, curve[i], r[i], k[i], s[i], removals[i], floor, peak[i])
+            upper[i] = crossing(0.0, curve[i], r[i], k[i], s[i], removals[i], peak[i], k[i])
 
 
 @kernel()
@@ -53,16 +76,7 @@ def holding_yield(season, curve, r, k, s, x, out):
         elif season != SHORT:
             out[i] = now
         else:
-            low, high = 0.0, x[i]
-            for _ in range(400):
-                middle = 0.5 * (low + high)
-                if middle in (low, high):
-                    break
-                if middle + growth(curve[i], middle, r[i], k[i], s[i]) < x[i]:
-                    low = middle
-                else:
-                    high = middle
-            out[i] = x[i] - 0.5 * (low + high)
+            out[i] = x[i] - crossing(1.0, curve[i], r[i], k[i], s[i], x[i], 0.0, x[i])
 
 
 @kernel()
