@@ -105,8 +105,15 @@ def crossing_years(record: Record, rates: Rates, quota: float, level: np.ndarray
     return out
 
 
-def find_thresholds(record: Record, rates: Rates, quota: float | None = None) -> Thresholds:
+def find_thresholds(
+    record: Record, rates: Rates, quota: float | None = None, *, branches: pd.DataFrame | None = None
+) -> Thresholds:
     """Thresholds of a record under a constant legal quota (default: the present quota, else the latest removals).
+
+    Parameters
+    ----------
+    branches : DataFrame, optional
+        Those found for another quota with the same rates: only the row of this quota is then added to them.
 
     Raises
     ------
@@ -145,15 +152,26 @@ def find_thresholds(record: Record, rates: Rates, quota: float | None = None) ->
         "years_to_recover_closed": recovery(0.0),
         "years_to_recover_half": recovery(0.5 * quota),
     }
-    top = max(1.3 * float(np.quantile(fold_quota, 0.95)), 1.2 * quota)
-    grid = np.unique(np.append(np.linspace(0.0, top, 40), quota))
     return Thresholds(
         quota=quota,
         spreads={name: Spread.of(v) for name, v in values.items()},
         beyond_fold=float(beyond.mean()),
         below_lower=float(below.mean()),
         doomed=float((beyond | below).mean()),
-        branches=equilibrium_branches(record, rates, grid),
+        branches=_branches(record, rates, quota, fold_quota, branches),
         seed=rates.seed,
         record_digest=rates.record_digest,
     )
+
+
+def _branches(
+    record: Record, rates: Rates, quota: float, fold_quota: np.ndarray, known: pd.DataFrame | None
+) -> pd.DataFrame:
+    """Equilibria against quota up to well beyond the fold, the examined quota among them."""
+    if known is None:
+        top = max(1.3 * float(np.quantile(fold_quota, 0.95)), 1.2 * quota)
+        return equilibrium_branches(record, rates, np.unique(np.append(np.linspace(0.0, top, 40), quota)))
+    if quota in known["quota"].to_numpy():
+        return known
+    own = equilibrium_branches(record, rates, np.array([quota]))
+    return pd.concat([known, own]).sort_values("quota", ignore_index=True)
