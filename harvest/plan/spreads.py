@@ -1,10 +1,9 @@
-"""Quantities over draws as rows of a table, for the commands that show them."""
+"""Quantities over draws as rows of a table, for commands and pages."""
 
 from __future__ import annotations
 
 import math
 
-from harvest.commands import show
 from harvest.plan import words
 from harvest.rates.spread import Spread
 
@@ -36,8 +35,3 @@ def row(label: str, spread: Spread, unit: str, absent: str = "none") -> list[str
         other = "" if absent == "none" else f"; else {absent}"
         label += f" (in the {words.short_probability(spread.share)} of draws that have one{other})"
     return [label, *(text(v) for v in values)]
-
-
-def table(rows: list[list[str]]) -> None:
-    """Print rows of :func:`row`."""
-    show.grid(HEADINGS, rows)
