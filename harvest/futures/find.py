@@ -162,7 +162,7 @@ def find_quota(
         A setting out of range, or a tolerance too small for the number of draws.
     """
     criterion = settle_criterion(record, rates, question, tolerance=tolerance, horizon=horizon)
-    years = max(curve_years(record), record.objectives.horizon if horizon is None else horizon)
+    years = max(curve_years(record), record.objectives.horizon if horizon is None else horizon, criterion.year)
     with workers(threads) as pool:
         curve = find_prepared(
             prepare(record, rates, futures_per_draw=futures_per_draw),

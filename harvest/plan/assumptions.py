@@ -13,34 +13,14 @@ from harvest.plan.table import QuotaTable
 from harvest.rates import Rates
 from harvest.rates.approach import latest_usable_count
 from harvest.record.model import Record
+from harvest.record.private import PRIVATE, is_private, without_private
 
 Pairs = list[tuple[str, str]]
 
 
-def is_private(record: Record, path: str) -> bool:
-    """Whether the record hides a field: by its own path ("plan.author") or its table's ("plan")."""
-    return any(path == name or path.startswith(name + ".") for name in record.private)
-
-
-def without_private(record: Record) -> Record:
-    """The record with its private names and texts replaced, for everything that leaves the program."""
-
-    def shown(path: str, text: str) -> str:
-        return words.PRIVATE if text and is_private(record, path) else text
-
-    return replace(
-        record,
-        name=shown("name", record.name),
-        species=shown("species", record.species),
-        place=shown("place", record.place),
-        surveys=tuple(replace(s, name=shown("survey", s.name)) for s in record.surveys),
-        plan=tuple((key, shown(f"plan.{key}", text)) for key, text in record.plan),
-    )
-
-
 def public(table: QuotaTable) -> QuotaTable:
     """The table as others may see it: private names and texts of its record replaced."""
-    survey = words.PRIVATE if is_private(table.record, "survey") else table.rates.count_survey
+    survey = PRIVATE if is_private(table.record, "survey") else table.rates.count_survey
     return replace(table, record=without_private(table.record), rates=replace(table.rates, count_survey=survey))
 
 

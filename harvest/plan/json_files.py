@@ -20,13 +20,13 @@ from harvest.futures.project import Future
 from harvest.futures.recommend import Recommendation
 from harvest.futures.risk import RiskCurve
 from harvest.futures.rules import Rule
-from harvest.plan.assumptions import assumptions, is_private, public, without_private
+from harvest.plan.assumptions import assumptions, public
 from harvest.plan.sentences import findings, headline
 from harvest.plan.table import QuotaTable
-from harvest.plan.words import PRIVATE
 from harvest.rates import Rates
 from harvest.rates.spread import Spread
 from harvest.record.model import Record
+from harvest.record.private import PRIVATE, is_private, without_private
 from harvest.yields.summary import YieldSummary
 from harvest.yields.thresholds import Thresholds
 

@@ -204,7 +204,7 @@ def make_quota_table(
         check_printable(rule, record.unit)
     question = question or pick_question(record, rates)
     criterion = settle_criterion(record, rates, question, tolerance=tolerance, horizon=horizon)
-    seed, years = rates.seed if seed is None else seed, max(curve_years(record), horizon)
+    seed, years = rates.seed if seed is None else seed, max(curve_years(record), horizon, criterion.year)
     with workers(threads) as pool:
         prepared = prepare(record, rates, futures_per_draw=futures_per_draw)
         telling = _telling(report, "risk against quota")

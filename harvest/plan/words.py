@@ -5,9 +5,7 @@ from __future__ import annotations
 import math
 
 from harvest.record.model import Level, Record
-
-#: Stands for a name or text that the record keeps private.
-PRIVATE = "(private)"
+from harvest.record.private import PRIVATE
 
 
 def number(value: float, unit: str = "animals") -> str:

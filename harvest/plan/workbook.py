@@ -13,11 +13,12 @@ from openpyxl.worksheet.worksheet import Worksheet
 
 from harvest.errors import CAUTION
 from harvest.plan import words
-from harvest.plan.assumptions import Pairs, assumptions, is_private, provenance, public, record_pairs
+from harvest.plan.assumptions import Pairs, assumptions, provenance, public, record_pairs
 from harvest.plan.cells import is_risky
 from harvest.plan.layout import Part, Value, parts
 from harvest.plan.sentences import findings, headline
 from harvest.plan.table import QuotaTable
+from harvest.record.private import PRIVATE, is_private
 
 INK, MUTED, RULE, ABUNDANCE, RISK = "22292D", "5C656A", "D9D4C7", "1B6B72", "7A2E5D"
 _LINE = Border(bottom=Side(style="thin", color=RULE))
@@ -165,7 +166,7 @@ def _history_sheet(book: Workbook, table: QuotaTable) -> None:
     """The record's yearly history, as entered."""
     record = table.record
     hidden = is_private(record, "history.removals")
-    removals: tuple[Value, ...] = (words.PRIVATE,) * len(record.history.years) if hidden else record.history.removals
+    removals: tuple[Value, ...] = (PRIVATE,) * len(record.history.years) if hidden else record.history.removals
     headings, kinds = ["Year", "Reported removals"], ["year", "index"]
     columns: list[tuple[Value, ...]] = [tuple(map(float, record.history.years)), removals]
     for survey in () if is_private(record, "survey") else record.surveys:

@@ -36,8 +36,9 @@ from harvest.record.schema import (
     Section,
 )
 
+_RATES = "Rates of all curves"
 SECTIONS: tuple[Section, ...] = (
-    Section("", "The population."),
+    Section("", "The population.", label="Population"),
     Section("survey", "One table for each survey; further [[survey]] tables may follow.", True, 0, 50, True),
     Section(
         "curve",
@@ -46,15 +47,16 @@ SECTIONS: tuple[Section, ...] = (
         1,
         len(CURVES),
         True,
+        label="Growth curve",
     ),
-    Section("rates", "Ranges shared by all curves; each is a number, or a range of values.", shown=True),
+    Section("rates", "Ranges shared by all curves; each is a number, or a range of values.", shown=True, label=_RATES),
     Section("correlation", "Rank correlations between two rates.", True, 0, 50),
-    Section("life", "Life-history facts, where known.", shown=True),
+    Section("life", "Life-history facts, where known.", shown=True, label="Life history"),
     Section("objectives", "What the quota must respect.", shown=True),
     Section("losses", "From the legal take to all deaths that people cause.", shown=True),
-    Section("rule", "The harvest rule to compare with a constant quota."),
+    Section("rule", "The harvest rule to compare with a constant quota.", label="Harvest rule"),
     Section("survey_plan", "The survey in the years ahead."),
-    Section("plan", "Texts for the written plan.", shown=True),
+    Section("plan", "Texts for the written plan.", shown=True, label="Texts of the plan"),
     Section("private", "What is left out when the record is shared."),
 )
 

@@ -205,6 +205,12 @@ class Section:
     at_least: int = 0
     at_most: int = 1
     shown: bool = False
+    label: str = ""
+
+    @property
+    def title(self) -> str:
+        """What forms call it, or one of its tables: "Growth curve"."""
+        return self.label or self.name.replace("_", " ").capitalize()
 
     @property
     def header(self) -> str:

@@ -10,7 +10,8 @@ from harvest.futures import Rule, fixed_quota
 from harvest.futures.rounding import round_down
 from harvest.plan.rows import compare_quotas
 from harvest.plan.sentences import findings, headline
-from harvest.record.model import ByYear, Distribution, Level, fixed
+from harvest.record.model import ByYear, Distribution, Level, Objectives, fixed
+from tests.builders import make_record
 from tests.plan.conftest import table_of
 
 
@@ -262,6 +263,16 @@ def test_the_tolerance_given_is_the_one_a_rule_is_judged_by(demos):
     table = table_of(demos["lake"], tolerance=0.01)
     assert "above your tolerance of 1%" in " ".join([headline(table), *findings(table)])
     assert "tolerance of 10%" not in " ".join([headline(table), *findings(table)])
+
+
+@pytest.mark.parametrize("levels", [{"limit": Level(1200.0)}, {"ceiling": Level(700.0)}], ids=["recovery", "reduction"])
+def test_an_aim_that_is_assumed_may_lie_beyond_the_horizon(levels):
+    """The assumed aim is ten years ahead; a horizon of five must not cut the curve short."""
+    record = make_record(objectives=Objectives(horizon=5, **levels))
+    advice = table_of(record).recommendation
+    assert advice.criterion.assumed
+    assert advice.criterion.year == 10
+    assert advice.qualifies
 
 
 def test_recovery_is_not_asked_of_a_population_above_its_limit(demos):
