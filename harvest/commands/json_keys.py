@@ -14,9 +14,9 @@ _EVENTS = (
 _QUANTILES = "low90, low50, median, high50, high90: quantiles over futures; mean and mean_se: mean, standard error"
 
 KEYS: dict[str, str] = {
-    "kind": "Which command wrote the file: new, check, yield, thresholds, project or quota.",
+    "kind": "Which command wrote the file: new, convert, check, yield, thresholds, project or quota.",
     "demo": "new: the demo that was copied; null for the template.",
-    "files": "new: the files that were made.",
+    "files": "new, convert: the files that were made.",
     "version": "Version of Harvest.",
     "caution": "The usual cautions.",
     "name": 'The record\'s name, or "(private)".',
@@ -33,7 +33,7 @@ KEYS: dict[str, str] = {
     "notes": "What a reader must know about the rates (ranges cut at what is possible).",
     "usable": "check: whether the record has no errors.",
     "supports_quota": "check: whether it also holds what this year's abundance rests on, so that a quota can be told.",
-    "problems": "check: every problem of the record.",
+    "problems": "check: every problem of the record; convert: its warnings.",
     "problems[].severity": "error or warning.",
     "problems[].file": "File of the problem.",
     "problems[].where": "Key, row or cell.",

@@ -79,7 +79,9 @@ def _find_file(folder: Path, name: str, limit: int, report: Report) -> Path | No
     if not home.is_dir():
         what = "something that is not a folder" if home.exists() else "no such folder"
         rule = "a record is a folder with record.toml and a history"
-        report.error("", what, rule, "Check the folder's name.")
+        workbook = home.suffix.lower() == ".xlsx" and home.exists()
+        cure = f"Convert it first: harvest convert {folder.name} FOLDER" if workbook else "Check the folder's name."
+        report.error("", what, rule, cure)
         return None
     if home not in path.parents:
         report.error(

@@ -161,6 +161,8 @@ def test_help_names_every_command_and_the_version(deer):
     for command in COMMANDS:
         told = harvest(command, "--help")
         assert told.returncode == 0
+        if command == "app":  # it draws with the defaults and writes no file of its own
+            continue
         assert "--seed" in told.stdout
         assert "--json" in told.stdout
 

@@ -41,6 +41,7 @@ def test_keys_and_files_agree(tmp_path, deer):
     for number, (command, folder) in enumerate(
         [
             ("new", tmp_path / "fresh"),
+            ("convert", deer),
             ("check", broken),
             ("yield", deer),
             ("thresholds", deer),
@@ -49,8 +50,8 @@ def test_keys_and_files_agree(tmp_path, deer):
         ]
     ):
         file = tmp_path / f"{number}.json"
-        draws = () if command in ("new", "check") else ("--draws", "500")
-        harvest(command, folder, *draws, "--json", file)
+        more = {"new": (), "check": (), "convert": (tmp_path / "deer.xlsx",)}
+        harvest(command, folder, *more.get(command, ("--draws", "500")), "--json", file)
         told = json.loads(file.read_text())
         assert told["kind"] == command
         for path in set(paths(told)):
