@@ -14,11 +14,13 @@ from harvest.errors import CAUTION, HarvestError
 #: Commands in the order of a manager's work, with the line that the overview shows.
 COMMANDS = {
     "new": "Make a new record from a template or a demo.",
+    "convert": "Turn a record's folder into an Excel workbook, or back.",
     "check": "Check a record and tell every problem with its cure.",
     "yield": "What the population can sustain, and where it stands.",
     "thresholds": "What collapses it: the fold, the equilibria, the times.",
     "project": "What a rule does in the years ahead.",
     "quota": "The recommended quota and the quota table for the plan.",
+    "app": "Do the whole job in the browser.",
     "keys": "Explain every key of the JSON files.",
 }
 

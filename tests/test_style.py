@@ -17,8 +17,9 @@ ROOT = Path(__file__).parent.parent
         ("ruff", "check", "."),
         ("ruff", "format", "--check", "."),
         ("mypy", "--no-error-summary"),
+        ("mypy", "--no-error-summary", *sorted(str(p) for p in (ROOT / "pages").glob("*.py"))),
     ],
-    ids=" ".join,
+    ids=lambda command: " ".join(command[:2]) + (" pages" if len(command) > 3 else ""),
 )
 def test_style(command):
     done = subprocess.run([sys.executable, "-m", *command], cwd=ROOT, capture_output=True, text=True, check=False)
