@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from datetime import datetime, time
 from typing import Any
 
 import streamlit as st
@@ -11,7 +12,7 @@ from harvest.desk import show
 from harvest.desk.results import results
 from harvest.desk.session import open_record, tell, workspace
 from harvest.errors import HarvestError
-from harvest.sheets.grid import Book
+from harvest.sheets.grid import Book, Cell
 from harvest.sheets.guessing import guess_mapping
 from harvest.sheets.header import HeaderGuess, column_names
 from harvest.sheets.numbers import is_blank
@@ -62,6 +63,7 @@ def took_upload(key: str) -> None:
     try:
         found = draft_of_upload(name, data)
         if found is None:
+            open_book(name, data)  # what cannot be read is told here, where another can be chosen
             choose_file(brought().keep(name, data))
             return
         draft, beyond = found
@@ -167,8 +169,10 @@ def sheet_and_header(table: Table, mapping: Mapping) -> None:
     show.table(heads, rows, range(wide + 1), told)
 
 
-def _shown(cell: object) -> str:
-    return "" if is_blank(cell) else str(cell).strip()[:40]  # type: ignore[arg-type]
+def _shown(cell: Cell) -> str:
+    if isinstance(cell, datetime) and cell.time() == time():
+        cell = cell.date()
+    return "" if is_blank(cell) else str(cell).strip()[:40]
 
 
 def column_roles(table: Table, mapping: Mapping) -> None:

@@ -20,7 +20,8 @@ from harvest.record.fields import CORRELATED, OWN_UNIT, SECTIONS, fields_of, pri
 from harvest.record.schema import DISTRIBUTIONS, Field, Section
 from harvest.workspace.document import locate, tables_in
 
-UNSET, EXACT, IN_UNIT, OF_CAPACITY = "not stated", "exactly", "as an abundance", "as a share of carrying capacity"
+UNSET, SHARED = "not stated", "as for all curves"
+EXACT, IN_UNIT, OF_CAPACITY = "exactly", "as an abundance", "as a share of carrying capacity"
 #: What a parameter of a range is called in a form.
 PARAMETERS = {
     "value": "Value",
@@ -195,7 +196,7 @@ def _choice(slot: Slot) -> None:
         index=place,
         key=key,
         help=_help(field),
-        placeholder="choose" if field.required else f"left out: {text_of(field.default) or 'nothing'}",
+        placeholder="choose" if field.required else text_of(field.default) or UNSET,
         on_change=lambda: slot.save(st.session_state[key]),
     )
 
@@ -259,12 +260,13 @@ def _by_year(slot: Slot) -> None:
 
 def _distribution(slot: Slot) -> None:
     field, raw = slot.field, slot.raw
-    kinds = list(RANGES) if field.required else [UNSET, *RANGES]
+    unset = SHARED if field.section == "curve" and field.key != "shape" else UNSET
+    kinds = list(RANGES) if field.required else [unset, *RANGES]
     kind_key = f"{slot.key} kind"
     table = raw if isinstance(raw, dict) else {} if raw is None else {"value": raw}
     stated = table.get("distribution", "fixed") if table else None
     names = {kind: name for name, kind in RANGES.items()}
-    now = UNSET if stated is None else names.get(text_of(stated), text_of(stated))
+    now = unset if stated is None else names.get(text_of(stated), text_of(stated))
     if now not in kinds:
         kinds.append(now)
     kind = st.session_state.get(kind_key, now)
