@@ -41,9 +41,11 @@ def another() -> None:
 
 def map_and_take(file: str) -> None:
     """The steps from the sheet to the record."""
-    table = bringing.Table(file)
-    show.kicker(table.name)
     top = st.container()
+    with top:
+        show.kicker(str(bringing.brought().said(file)["name"]))
+    st.button("Put this file away and take another", key="another", on_click=another)
+    table = bringing.Table(file)
     mapping = table.mapping
     bringing.sheet_and_header(table, mapping)
     bringing.column_roles(table, mapping)
@@ -54,7 +56,6 @@ def map_and_take(file: str) -> None:
     with top:
         show.title("Ready to take over" if ready else "Say what is what, then take it over")
         show.say("Nothing is changed in your file, and nothing is read other than it stands there without your yes.")
-        st.button("Put this file away and take another", key="another", on_click=another)
     show.head("Take it over")
     name = st.text_input("Name of the population", Path(table.name).stem, key=f"{file} name")
     hand = in_hand()

@@ -72,6 +72,9 @@ def section_form(hand: Hand, name: str) -> None:
     for _, problem in [pair for pair in mine if not pair[0][2]]:
         show.problem(problem, "")
     if not section.many:
+        if section.name and tables[0] and any(f.required for f in fields_of(name)):
+            label = f"Take out: {section.title.lower()}"
+            st.button(label, key=f"out {name} {generation()}", on_click=_take_section_out, args=(name,))
         _table_form(section, None, tables[0], mine, _kind(document))
         return
     for number, table in enumerate(tables):
@@ -95,6 +98,11 @@ def _add(section: str, number: int) -> None:
     first = next(f for f in fields_of(section) if f.required)
     value = [] if first.sort == "list of names" else first.choices[0] if first.choices else f"{section} {number + 1}"
     change(f"add a {_title(section).lower()}", lambda draft: draft.with_value(section, number, first.key, value))
+
+
+def _take_section_out(section: str) -> None:
+    change(f"take out: {_title(section).lower()}", lambda draft: draft.without_section(section))
+    begin_anew()
 
 
 def _take_out(section: str, number: int) -> None:
@@ -186,7 +194,7 @@ def _long_text(slot: Slot) -> None:
 
 def _choice(slot: Slot) -> None:
     field, key = slot.field, slot.key
-    options = list(field.choices)
+    options = [*([] if field.required else [UNSET]), *field.choices]
     if slot.raw is not None and slot.raw not in options:
         options.append(text_of(slot.raw))
     place = options.index(text_of(slot.raw)) if slot.raw is not None else None
@@ -197,7 +205,7 @@ def _choice(slot: Slot) -> None:
         key=key,
         help=_help(field),
         placeholder="choose" if field.required else text_of(field.default) or UNSET,
-        on_change=lambda: slot.save(st.session_state[key]),
+        on_change=lambda: slot.save(None if st.session_state[key] == UNSET else st.session_state[key]),
     )
 
 

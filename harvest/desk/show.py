@@ -16,8 +16,8 @@ from harvest.plan.layout import Part, Value, shown
 _STYLE = Path(__file__).parent / "style.css"
 #: Marks of Markdown only where they could mean one: screen readers read the backslash of a label aloud.
 _MARKDOWN = re.compile(r"(^\d{1,9}(?=[.)]))|([\\`*_{}\[\]<>#$~|!&@^=]|\.(?=[^\s\d])|^[-+])")
-#: What Streamlit turns into a picture or an arrow in spite of a backslash; an invisible word joiner stops it.
-_PICTURES = re.compile(r":(?=\S)|[-<>~=](?=[-<>=])")
+#: What Streamlit makes a picture, arrow or link of in spite of a backslash; an invisible word joiner stops it.
+_REPLACED = re.compile(r":(?=\S)|[-<>~=](?=[-<>=])|(?i:www)(?=\.)|@")
 
 
 def style() -> None:
@@ -27,7 +27,7 @@ def style() -> None:
 
 def literal(text: str) -> str:
     """Text for a label that Streamlit reads as Markdown: every mark escaped, on one line."""
-    return _MARKDOWN.sub(r"\1\\\2", _PICTURES.sub("\\g<0>\u2060", " ".join(text.split())))
+    return _MARKDOWN.sub(r"\1\\\2", _REPLACED.sub("\\g<0>\u2060", " ".join(text.split())))
 
 
 def kicker(text: str) -> None:

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from harvest.record.fields import SECTIONS, fields_of
-from harvest.record.write import render_pair
+from harvest.record.write import render_key, render_pair
 
 #: ``record.toml`` as plain values.
 Document = dict[str, Any]
@@ -26,7 +26,8 @@ def render_document(document: Mapping[str, Any], head: str) -> str:
     parts = [head, _render_table("", "", {k: v for k, v in document.items() if k not in sections})]
     known = [s.name for s in SECTIONS if s.name in sections]
     for name in [*known, *(n for n in sections if n not in known)]:
-        header = f"[[{_key(name)}]]" if isinstance(document[name], list) else f"[{_key(name)}]"
+        key = render_key(name)
+        header = f"[[{key}]]" if isinstance(document[name], list) else f"[{key}]"
         parts += [_render_table(name, header, table) for table in sections[name]]
     return "\n".join(part for part in parts if part)
 
@@ -44,9 +45,4 @@ def _render_table(section: str, header: str, table: Mapping[str, Any]) -> str:
     order = [f.key for f in fields_of(section)]
     keys = [*(k for k in order if k in table), *(k for k in table if k not in order)]
     lines = [header] if header else []
-    return "".join(f"{line}\n" for line in [*lines, *(render_pair(_key(k), table[k]) for k in keys)])
-
-
-def _key(name: str) -> str:
-    """A key as TOML writes it: bare, or in quotes."""
-    return render_pair(name, 0).removesuffix(" = 0")
+    return "".join(f"{line}\n" for line in [*lines, *(render_pair(k, table[k]) for k in keys)])

@@ -132,13 +132,22 @@ def make_plain(value: Any) -> Any:
     return value
 
 
+def render_key(key: str) -> str:
+    """A key as TOML writes it: bare, or in quotes."""
+    return tomli_w.dumps({key: 0}).removesuffix(" = 0\n")
+
+
 def render_pair(key: str, value: Any) -> str:
     """One line "key = value" of TOML; a table goes inside the line."""
+    return f"{render_key(key)} = {_render_value(value)}"
+
+
+def _render_value(value: Any) -> str:
     if isinstance(value, Mapping):
-        return f"{key} = {{ {', '.join(render_pair(k, v) for k, v in value.items())} }}"
+        return f"{{ {', '.join(render_pair(k, v) for k, v in value.items())} }}"
     if isinstance(value, list):
-        return f"{key} = [{', '.join(render_pair('', v).removeprefix(' = ') for v in value)}]"
-    return tomli_w.dumps({key or "x": value}).strip("\n").removeprefix("" if key else "x")
+        return f"[{', '.join(map(_render_value, value))}]"
+    return tomli_w.dumps({"x": value}).removeprefix("x = ").removesuffix("\n")
 
 
 def _render_history(record: Record) -> str:

@@ -114,6 +114,14 @@ class Draft:
         document[section] = [*tables[:index], *tables[index + 1 :]]
         return self.with_document(document)
 
+    def without_section(self, section: str) -> Draft:
+        """A whole section taken out."""
+        document = self.document
+        if document is None or section not in document:
+            return self
+        del document[section]
+        return self.with_document(document)
+
     def with_grid(self, grid: Grid) -> Draft:
         """The same record with another history."""
         stream = io.StringIO(newline="")
