@@ -5,11 +5,12 @@ Started by the command ``harvest app``; a page is widgets in, one call of an ana
 
 from __future__ import annotations
 
+from itertools import groupby
 from pathlib import Path
 
 import streamlit as st
 
-from harvest.desk import show
+from harvest.desk import frame, show
 from harvest.desk.session import messages, settle
 from harvest.errors import HarvestError
 
@@ -37,15 +38,15 @@ def main() -> None:
     )
     show.style()
     st.logo(MARK, size="large")
-    groups: dict[str, list] = {}
-    pages = {}
-    for group, file, name, address in PAGES:
-        pages[file] = st.Page(FOLDER / file, title=name, url_path=address, default=file == PAGES[0][1])
-        groups.setdefault(group, []).append(pages[file])
+    pages = {
+        file: st.Page(FOLDER / file, title=name, url_path=address, default=file == PAGES[0][1])
+        for _, file, name, address in PAGES
+    }
     st.session_state["pages"] = pages
-    page = st.navigation(groups)
+    page = st.navigation(list(pages.values()), position="hidden")
     try:
         settle()
+        _sidebar()
         for text in messages():
             st.warning(show.literal(text))
         page.run()
@@ -54,6 +55,15 @@ def main() -> None:
         for line in str(error).splitlines():
             show.say(line)
     show.caution()
+
+
+def _sidebar() -> None:
+    """Links to the pages in their groups; they carry the record along, also into a new window."""
+    with st.sidebar:
+        for group, pages in groupby(PAGES, key=lambda page: page[0]):
+            st.html(f'<p class="hv-group">{group}</p>')
+            for _, file, name, _ in pages:
+                frame.link(file, name, icon=None)
 
 
 main()

@@ -70,7 +70,7 @@ def try_tolerance(record: Record, table: QuotaTable) -> None:
     advice = recommend_quota(record, table.curve, "limit", tolerance=tolerance, horizon=table.horizon)
     quota = f"{words.number(advice.quota, record.unit)} {frame.unit_a_year(record)}"
     show.say(
-        f"A tolerance of {words.percent(tolerance)} allows {quota}"
+        f"A tolerance of {words.percent(tolerance)} allows {quota}."
         if advice.qualifies
         else f"A tolerance of {words.percent(tolerance)} is not met even without a take."
     )

@@ -64,7 +64,10 @@ def took_upload(key: str) -> None:
         found = draft_of_upload(name, data)
         if found is None:
             open_book(name, data)  # what cannot be read is told here, where another can be chosen
-            choose_file(brought().keep(name, data))
+            file = brought().keep(name, data)
+            if len(brought().said(file)) > 1:
+                tell(f"{name} was brought before: what you said about it then is kept.")
+            choose_file(file)
             return
         draft, beyond = found
         open_record(workspace().add(draft, f"from the file {name}"))

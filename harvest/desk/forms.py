@@ -14,7 +14,7 @@ import streamlit as st
 
 from harvest.desk import show
 from harvest.desk.session import Hand, begin_anew, change, generation
-from harvest.desk.typed import allowed, in_form, text_of, value_of
+from harvest.desk.typed import allowed, in_blocks, in_form, text_of, value_of
 from harvest.errors import Problem
 from harvest.record.fields import CORRELATED, OWN_UNIT, SECTIONS, fields_of, private_names
 from harvest.record.schema import DISTRIBUTIONS, Field, Section
@@ -38,6 +38,13 @@ PARAMETERS = {
 RANGES = {EXACT: "fixed", **{name: name for name in DISTRIBUTIONS if name != "fixed"}}
 #: Kept by the program itself.
 HIDDEN = ("format", "history")
+#: Keys that a record needs although no single place of them is needed.
+SOMEWHERE = {
+    "rates.growth_rate": "this or max growth",
+    "rates.max_growth": "this or growth rate",
+    "rates.carrying_capacity": "here, or in each curve",
+    "rates.process_noise": "here, or in each curve",
+}
 _MIDDLES = ("value", "mode", "median", "mean")
 
 
@@ -70,7 +77,7 @@ def section_form(hand: Hand, name: str) -> None:
     found = [(locate(p.where), p) for p in hand.problems if p.file == "record.toml"]
     mine = [(place, p) for place, p in found if place[0] == name]
     for _, problem in [pair for pair in mine if not pair[0][2]]:
-        show.problem(problem, "")
+        show.problem(in_blocks(problem, name), "")
     if not section.many:
         if section.name and tables[0] and any(f.required for f in fields_of(name)):
             label = f"Take out: {section.title.lower()}"
@@ -126,7 +133,7 @@ def _table_form(section: Section, index: int | None, table: dict[str, Any], mine
             show.problem(in_form(problem, field, raw), "")
     for place, problem in mine:
         if place[2] and place[2] not in shown_keys:
-            show.problem(problem)
+            show.problem(in_blocks(problem, section.name))
             if place[2] in table and place[2] not in HIDDEN:
                 label = f"Take out {place[2]}"
                 st.button(
@@ -144,7 +151,8 @@ def _drop(section: str, index: int | None, key: str) -> None:
 def _label(slot: Slot) -> str:
     field = slot.field
     unit = slot.kind if field.unit == OWN_UNIT else field.unit
-    return show.literal(f"{field.title}{f' ({unit})' if unit else ''}{'' if field.required else ' · optional'}")
+    told = "" if field.required else SOMEWHERE.get(field.path, "optional")
+    return show.literal(f"{field.title}{f' ({unit})' if unit else ''}{f' · {told}' if told else ''}")
 
 
 def _kind(document: dict[str, Any]) -> str:

@@ -7,7 +7,7 @@ import math
 import streamlit as st
 
 from harvest.desk import show
-from harvest.desk.session import Hand, in_hand
+from harvest.desk.session import ADDRESS, Hand, in_hand
 from harvest.plan import words
 from harvest.plan.card import nice_step
 from harvest.record.model import Record
@@ -71,9 +71,11 @@ def unit_a_year(record: Record) -> str:
     return f"{words.kind(record)} a year"
 
 
-def link(page: str, label: str) -> None:
-    """A link to another page."""
-    st.page_link(st.session_state["pages"][page], label=label, icon=":material/arrow_forward:")
+def link(page: str, label: str, icon: str | None = ":material/arrow_forward:") -> None:
+    """A link to another page, about the same record."""
+    here = st.session_state.get(ADDRESS)
+    about = {ADDRESS: here} if here else None
+    st.page_link(st.session_state["pages"][page], label=label, icon=icon, query_params=about)
 
 
 def population(record: Record) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import signal
 import socket
 import subprocess
 import sys
@@ -93,12 +94,14 @@ def launch(record: str | None, port: int | None, browser: bool, tell: Callable[[
     server = subprocess.Popen(server_command(chosen))
     if browser:
         threading.Thread(target=_open_when_ready, args=(address, chosen), daemon=True).start()
+    signal.signal(signal.SIGTERM, lambda *_: sys.exit(0))  # the server must not outlive the command
     try:
         code = server.wait()
     except KeyboardInterrupt:
+        return
+    finally:
         server.terminate()
         server.wait()
-        return
     if code:
         raise SettingsError(f"the app's server ended with status {code}; its message stands above")
 

@@ -9,6 +9,7 @@ from typing import Any
 from harvest.errors import Problem
 from harvest.record.numbers import explain_number, parse_number
 from harvest.record.schema import MAX_NUMBER, MAX_TEXT, Field, Interval
+from harvest.sheets.record_workbook_words import without_toml
 
 _WHOLE = re.compile("[+-]?[0-9]{1,15}")
 #: What a problem says about quotes and brackets makes no sense in a form.
@@ -61,6 +62,12 @@ def allowed(field: Field) -> str:
         "choice": "one of " + ", ".join(field.choices),
     }
     return words.get(field.sort, field.rule())
+
+
+def in_blocks(problem: Problem, section: str) -> Problem:
+    """A problem of a whole section without the notation of the file."""
+    rule, cure = without_toml(problem.rule, section), without_toml(problem.cure, section)
+    return replace(problem, rule=rule, cure=cure)
 
 
 def in_form(problem: Problem, field: Field | None, raw: Any) -> Problem:

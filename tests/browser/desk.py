@@ -122,7 +122,7 @@ class Desk:
 
     def go(self, name: str) -> None:
         """Go to another page by the sidebar."""
-        self.after(self.page.get_by_role("navigation").get_by_role("link", name=name, exact=True).click)
+        self.after(self.page.get_by_test_id("stSidebar").get_by_role("link", name=name, exact=True).click)
 
     def go_by_menu(self, name: str) -> None:
         """Go to another page where the sidebar is closed, on a phone, and close it again."""

@@ -118,7 +118,7 @@ def test_another_tolerance(space: Workspace, name: str) -> None:
         at.select_slider[0].set_value(tolerance).run()
         advice = recommend_quota(demo(name), base.curve, "limit", tolerance=tolerance, horizon=base.horizon)
         quota = f"{words.number(advice.quota, demo(name).unit)} {words.kind(demo(name))} a year"
-        assert f"A tolerance of {words.percent(tolerance)} allows {quota}" in read(at).said
+        assert f"A tolerance of {words.percent(tolerance)} allows {quota}." in read(at).said
 
 
 def test_a_demo_has_its_tolerance_tried() -> None:
