@@ -51,9 +51,8 @@ def main() -> None:
             st.warning(show.literal(text))
         page.run()
     except HarvestError as error:
-        show.title("This cannot be computed")
-        for line in str(error).splitlines():
-            show.say(line)
+        frame.cannot(str(error))
+        frame.link(frame.RECORD, "Look at the record")
     show.caution()
 
 

@@ -10,6 +10,7 @@ from harvest.desk import bringing, show
 from harvest.desk.handing_out import EXCEL
 from harvest.desk.session import in_hand
 from harvest.sheets.record_workbook import blank_record_workbook
+from harvest.workspace.sources import surveys_leaving
 
 
 def upload() -> None:
@@ -76,6 +77,9 @@ def map_and_take(file: str) -> None:
                 on_click=bringing.take,
                 args=(table, taken, hand.entry.id, name),
             )
+        leaving = [] if hand is None else surveys_leaving(hand.draft, bringing.taken_surveys(taken))
+    if leaving:
+        show.note(f"Into the open record: its surveys without a column here leave it: {', '.join(leaving)}.")
     if not ready:
         show.note("The buttons wake up once every question is answered and nothing is left to mend.")
 

@@ -27,7 +27,7 @@ GROUPS: dict[str, tuple[str, ...]] = {
 }
 
 
-def group_of(hand: Hand) -> dict[str, list[str]]:
+def group_of() -> dict[str, list[str]]:
     """Every section in its group."""
     groups = {name: list(sections) for name, sections in GROUPS.items()}
     known = {s for sections in GROUPS.values() for s in sections}
@@ -73,7 +73,7 @@ def main() -> None:
     if hand.draft.document is None:
         raw_record(hand)
         return
-    groups = group_of(hand)
+    groups = group_of()
     faults = counts(hand, groups)
     chosen = st.segmented_control(
         "Part of the record",

@@ -5,11 +5,10 @@ from __future__ import annotations
 import streamlit as st
 
 from harvest.charts import draw_future, draw_probabilities, draw_risk, mark_quota
-from harvest.charts.probabilities import RISKS
+from harvest.charts.probabilities import AIMS, RISKS, meaningful
 from harvest.desk import frame, show
-from harvest.desk.answers import future_of, risk_of, table_of
+from harvest.desk.answers import advice_of, future_of, risk_of, table_of
 from harvest.desk.figure import picture
-from harvest.futures.recommend import recommend_quota
 from harvest.plan import words
 from harvest.plan.sentences import headline
 from harvest.plan.table import QuotaTable
@@ -48,7 +47,10 @@ def try_quotas(record: Record, table: QuotaTable) -> None:
     drawn = draw_future(record, table.rates, future)
     picture(drawn, unit, name, lambda: draw_future(record, table.rates, future, public=True))
     drawn = draw_probabilities(record, future, events=RISKS)
-    picture(drawn, unit, name, lambda: draw_probabilities(record, future, public=True))
+    picture(drawn, unit, name, lambda: draw_probabilities(record, future, events=RISKS, public=True))
+    if set(AIMS) & set(meaningful(record, future)):
+        drawn = draw_probabilities(record, future, events=AIMS)
+        picture(drawn, unit, name, lambda: draw_probabilities(record, future, events=AIMS, public=True))
 
 
 @st.fragment
@@ -67,7 +69,7 @@ def try_tolerance(record: Record, table: QuotaTable) -> None:
         format_func=words.percent,
         key="tried tolerance",
     )
-    advice = recommend_quota(record, table.curve, "limit", tolerance=tolerance, horizon=table.horizon)
+    advice = advice_of(record, table, tolerance)
     quota = f"{words.number(advice.quota, record.unit)} {frame.unit_a_year(record)}"
     show.say(
         f"A tolerance of {words.percent(tolerance)} allows {quota}."
@@ -88,7 +90,8 @@ def main() -> None:
         return
     show.title(headline(table))
     show.note(
-        "Move the quota: every value is read off one stored curve of risk against quota, made on the same futures."
+        "Move the quota: the risk is read off one stored curve, between its points by a straight line. The years ahead "
+        "below are projected anew for your quota, on the same futures, and can differ in the last digit."
     )
     try_quotas(record, table)
     try_tolerance(record, table)

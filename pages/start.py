@@ -9,6 +9,7 @@ from harvest.desk import frame, opening, show
 from harvest.desk.answers import table_of, thresholds_of, yields_of
 from harvest.desk.figure import picture
 from harvest.desk.session import in_hand
+from harvest.errors import HarvestError
 from harvest.record.model import Record
 
 
@@ -51,9 +52,13 @@ def main() -> None:
     picture(draw_history(record), record.unit, frame.population(record), lambda: draw_history(record, public=True))
     indices = draw_indices(record)
     if indices is not None:
-        picture(indices, record.unit, frame.population(record), lambda: draw_indices(record, public=True) or indices)
+        picture(indices, record.unit, frame.population(record), lambda: draw_indices(record, public=True))
     with top:
-        answer(record)
+        try:
+            answer(record)
+        except HarvestError as error:
+            frame.cannot(str(error))
+            frame.link(frame.RECORD, "Look at the record")
     with st.container(horizontal=True):
         frame.link("risk.py", "See the risk and move the quota")
         frame.link("quota.py", "Take the table into the plan")

@@ -42,7 +42,7 @@ def draw_probabilities(
         Leave out what the record keeps private, for a file that others see.
     """
     record = drawable(record, public)
-    shown, table = [e for e in _meaningful(record, future) if e in events], future.by_year
+    shown, table = [e for e in meaningful(record, future) if e in events], future.by_year
     check_events(shown)
     years = table["count_year"].to_numpy()
     highest = max(float(table[e].max()) for e in shown)
@@ -94,8 +94,8 @@ def _names(shown: Sequence[str]) -> tuple[str, str]:
     return ("aims-by-year", "Aims by year") if set(shown) <= set(AIMS) else ("chances-by-year", "Chances by year")
 
 
-def _meaningful(record: Record, future: Future) -> list[str]:
-    """Which events the record gives a meaning; recovery where most futures are below the limit in the first year."""
+def meaningful(record: Record, future: Future) -> list[str]:
+    """Events that the record gives a meaning; recovery where most futures are below the limit in the first year."""
     aims, first = record.objectives, future.by_year.iloc[0]
     events = ["below_limit", "ever_below_limit", "ever_collapsed"] if aims.limit is not None else ["ever_collapsed"]
     if aims.limit is not None and first["below_limit"] > 0.5:

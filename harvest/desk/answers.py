@@ -12,11 +12,13 @@ import streamlit as st
 
 from harvest.desk import show
 from harvest.desk.results import results
+from harvest.errors import HarvestError
 from harvest.record.model import Record
 
 if TYPE_CHECKING:
     from harvest.charts.picture import Picture
     from harvest.futures.project import Future
+    from harvest.futures.recommend import Recommendation
     from harvest.plan.table import QuotaTable, Report
     from harvest.rates import Rates
     from harvest.yields import Thresholds, YieldSummary
@@ -31,14 +33,14 @@ def rates_of(record: Record) -> Rates:
     """The draws."""
     from harvest.rates import draw_rates
 
-    return results().get(("rates", record.digest()), lambda: draw_rates(record, SEED, DRAWS))
+    return _at_once(("rates", record.digest()), lambda: draw_rates(record, SEED, DRAWS))
 
 
 def yields_of(record: Record) -> YieldSummary:
     """What the population can sustain."""
     from harvest.yields import summarise_yield
 
-    return results().get(("yield", record.digest()), lambda: summarise_yield(record, rates_of(record)))
+    return _at_once(("yield", record.digest()), lambda: summarise_yield(record, rates_of(record)))
 
 
 def thresholds_of(record: Record, quota: float | None = None) -> Thresholds:
@@ -49,7 +51,7 @@ def thresholds_of(record: Record, quota: float | None = None) -> Thresholds:
         known = None if quota is None else thresholds_of(record).branches
         return find_thresholds(record, rates_of(record), quota, branches=known)
 
-    return results().get(("thresholds", record.digest(), quota), make)
+    return _at_once(("thresholds", record.digest(), quota), make)
 
 
 def future_of(record: Record, quota: float) -> Future:
@@ -80,6 +82,17 @@ def risk_of(record: Record, table: QuotaTable) -> Picture:
     return results().get(key, lambda: draw_risk(record, table.curve, table.recommendation))
 
 
+def advice_of(record: Record, table: QuotaTable, tolerance: float) -> Recommendation:
+    """The recommended quota at another tolerance, its curve refined for it as the quota table's was for its own."""
+    from harvest.futures.find import find_quota
+
+    def make() -> Recommendation:
+        rates, horizon, seed = table.rates, table.horizon, table.seed
+        return find_quota(record, rates, "limit", tolerance=tolerance, horizon=horizon, seed=seed)[1]
+
+    return results().get(("advice", record.digest(), table.horizon, tolerance), make)
+
+
 def _at_work(key: Hashable, label: str, make: Callable[[Report], T]) -> T | None:
     """The result; on the way a bar, and a button that stops the work as any other click does."""
     found: T | None = results().find(key)
@@ -99,10 +112,29 @@ def _at_work(key: Hashable, label: str, make: Callable[[Report], T]) -> T | None
     def report(what: str, done: int, total: int) -> None:
         bar.progress(done / total, f"{what[:1].upper()}{what[1:]}")
 
-    value = make(report)
+    try:
+        value = make(report)
+    except HarvestError:
+        place.empty()
+        raise
     results().keep(key, value)
     place.empty()
     return value
+
+
+def _at_once(key: Hashable, make: Callable[[], T]) -> T:
+    """A result that takes a moment: announced only where the program must compile itself first."""
+    from harvest.kernels.compiling import is_warm
+
+    if results().find(key) is not None or is_warm():
+        return results().get(key, make)
+    place = st.empty()
+    with place.container():
+        _announce("what is asked here")
+    try:
+        return results().get(key, make)
+    finally:
+        place.empty()
 
 
 def _announce(label: str) -> None:

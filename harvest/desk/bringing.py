@@ -29,7 +29,6 @@ from harvest.workspace.sources import draft_of_history, draft_of_upload, with_hi
 ADDRESS = "sheet"
 #: Rows of a sheet that are shown as they are, and columns.
 ROWS_SHOWN, COLUMNS_SHOWN = 14, 30
-WHOLE_RECORD = ".zip or a record's workbook"
 
 
 def brought() -> Brought:
@@ -63,8 +62,9 @@ def took_upload(key: str) -> None:
     try:
         found = draft_of_upload(name, data)
         if found is None:
-            open_book(name, data)  # what cannot be read is told here, where another can be chosen
+            book = open_book(name, data)  # what cannot be read is told here, where another can be chosen
             file = brought().keep(name, data)
+            results().keep(("book", file), book)
             if len(brought().said(file)) > 1:
                 tell(f"{name} was brought before: what you said about it then is kept.")
             choose_file(file)
@@ -89,14 +89,28 @@ class Table:
 
     def say(self, **more: Any) -> None:
         """Keep what was said; a None takes back."""
-        self.said = {k: v for k, v in {**self.said, **more}.items() if v is not None}
-        brought().say(self.file, self.said)
+        self._keep(lambda said: {k: v for k, v in {**said, **more}.items() if v is not None})
+
+    def say_of(self, what: str, name: str, value: Any) -> None:
+        """Keep one answer or the use of one column, beside those of before."""
+        self._keep(lambda said: {**said, what: {**said.get(what, {}), name: value}})
+
+    def _keep(self, alter: Callable[[dict[str, Any]], dict[str, Any]]) -> None:
+        try:
+            self.said = brought().say(self.file, alter)
+        except HarvestError as error:
+            tell(str(error))
+
+    @property
+    def state(self) -> str:
+        """What widgets are keyed by: they begin anew with another sheet, header or direction."""
+        return f"{self.file} {[self.said.get(name) for name in ('sheet', 'transposed', 'header')]}"
 
     @property
     def mapping(self) -> Mapping:
         """The guess, with everything that was said put in its place."""
         said = self.said
-        header = HeaderGuess(said["header"][0], said["header"][1]) if "header" in said else None
+        header = HeaderGuess(*said["header"]) if "header" in said else None
         guess = guess_mapping(self.book, said.get("sheet"), header, said.get("transposed"))
         told = said.get("columns", {})
         guessed = {use.column: use for use in guess.columns}
@@ -125,7 +139,7 @@ def sheet_and_header(table: Table, mapping: Mapping) -> None:
     names = [sheet.name + (" (hidden)" if sheet.hidden else "") for sheet in table.book.sheets]
     view = view_of(table.book.sheets[mapping.sheet], mapping.transposed)
     *first, header_from, header_rows, turned = st.columns(3 + (len(names) > 1), vertical_alignment="bottom")
-    key = f"{table.file} {mapping.sheet} {mapping.transposed} {mapping.header_first} {mapping.header_end}"
+    key = table.state
 
     def anew(**more: Any) -> None:
         table.say(**{"columns": None, "answers": None, "header": None, **more})
@@ -145,7 +159,7 @@ def sheet_and_header(table: Table, mapping: Mapping) -> None:
 
     def header() -> None:
         first, rows = st.session_state[first_key] - 1, st.session_state[end_key]
-        anew(sheet=mapping.sheet, transposed=mapping.transposed, header=(first, first + rows))
+        anew(sheet=mapping.sheet, transposed=mapping.transposed, header=(first, min(first + rows, most)))
 
     most = max(1, view.sheet.size[0])
     with header_from:
@@ -185,7 +199,6 @@ def column_roles(table: Table, mapping: Mapping) -> None:
     names = table.names(mapping)
     sheet = view_of(table.book.sheets[mapping.sheet], mapping.transposed).sheet
     surveys = [use.survey or names[use.column] for use in mapping.columns if use.role == COUNT]
-    state = f"{table.file} {mapping.sheet} {mapping.header_first} {mapping.header_end} {mapping.transposed}"
     for use in mapping.columns:
         body = [_shown(row[use.column]) for row in sheet.cells[mapping.header_end :]]
         seen = [text for text in body if text]
@@ -195,7 +208,7 @@ def column_roles(table: Table, mapping: Mapping) -> None:
         with left:
             label = names[use.column] or f"column {letters(use.column)}, without a name"
             show.note(f"{label}: {', '.join(seen[:4])}{' …' if len(seen) > 4 else ''}")
-        role_key, survey_key = f"{state} {use.column} role", f"{state} {use.column} survey"
+        role_key, survey_key = f"{table.state} {use.column} role", f"{table.state} {use.column} survey"
         with middle:
             st.selectbox(
                 f"What {show.literal(label)} is",
@@ -220,16 +233,14 @@ def column_roles(table: Table, mapping: Mapping) -> None:
 
 def _set_role(table: Table, use: ColumnUse, key: str) -> Callable[[], None]:
     def took() -> None:
-        columns = {**table.said.get("columns", {}), str(use.column): (st.session_state[key], use.survey)}
-        table.say(columns=columns)
+        table.say_of("columns", str(use.column), (st.session_state[key], use.survey))
 
     return took
 
 
 def _set_survey(table: Table, use: ColumnUse, key: str) -> Callable[[], None]:
     def took() -> None:
-        columns = {**table.said.get("columns", {}), str(use.column): (use.role, st.session_state[key])}
-        table.say(columns=columns)
+        table.say_of("columns", str(use.column), (use.role, st.session_state[key]))
 
     return took
 
@@ -248,10 +259,10 @@ def questions(table: Table, taken: Taken) -> None:
 def _question(table: Table, question: Question) -> None:
     labels = dict(question.options)
     values = list(labels)
-    key = f"{table.file} answer {question.id}"
+    key = f"{table.state} answer {question.id}"
 
     def took() -> None:
-        table.say(answers={**table.said.get("answers", {}), question.id: st.session_state[key]})
+        table.say_of("answers", question.id, st.session_state[key])
 
     with st.container(border=True):
         st.radio(
@@ -279,12 +290,17 @@ def preview(taken: Taken) -> None:
     show.table([name.replace("_", " ") for name in taken.header], taken.rows, words, f"{len(taken.rows)} years")
 
 
-def take(table: Table, taken: Taken, into: str | None, name: str) -> None:
-    """Make a record of the history, or put it into the open one."""
-    surveys = [
+def taken_surveys(taken: Taken) -> list[dict[str, str]]:
+    """The surveys of a history as the record states them."""
+    return [
         {"name": s.name, "column": s.column, **({"cv_column": s.cv_column} if s.cv_column else {})}
         for s in taken.surveys
     ]
+
+
+def take(table: Table, taken: Taken, into: str | None, name: str) -> None:
+    """Make a record of the history, or put it into the open one."""
+    surveys = taken_surveys(taken)
     try:
         if into is None:
             draft = draft_of_history(name, taken.history_text, surveys)

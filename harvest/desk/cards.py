@@ -38,7 +38,8 @@ def season_cards(record: Record, table: QuotaTable, yields: YieldSummary, found:
     if present is not None:
         aim = table.recommendation.criterion
         risk, _ = table.curve.at("ever_below_limit", present[0], table.horizon)
-        told = f"chance of falling below the limit {words.short_probability(risk)}"
+        level = "the limit" if record.objectives.limit is not None else "the collapse level"
+        told = f"chance of falling below {level} {words.short_probability(risk)}"
         if aim.question != "limit":
             told = f"chance of meeting the aim {words.short_probability(present[1])}"
         cards.append(("Present quota, a year", words.number(present[0], unit), told))

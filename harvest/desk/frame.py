@@ -34,6 +34,12 @@ def sound_record() -> Record | None:
     return hand.record
 
 
+def cannot(reason: str) -> None:
+    """What stands in place of a result that cannot be had."""
+    show.title("This cannot be computed yet")
+    show.say(*(line[:1].upper() + line[1:] for line in reason.splitlines()))
+
+
 def faults(hand: Hand) -> str:
     """The number of errors in words."""
     n = len(hand.errors)
@@ -104,7 +110,8 @@ def quota_slider(key: str, label: str, record: Record, start: float, top: float)
     number_key, slider_key = f"{name} number", f"{name} slider"
 
     def took(source: str) -> None:
-        st.session_state[name] = float(st.session_state[source])
+        given = float(st.session_state[source])
+        st.session_state[name] = float(round(given)) if record.unit == "animals" else given
         for other in (number_key, slider_key):
             st.session_state[other] = st.session_state[name]
 

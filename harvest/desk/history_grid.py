@@ -12,11 +12,11 @@ import pandas as pd
 import streamlit as st
 
 from harvest.desk import show
-from harvest.desk.session import Hand, begin_anew, change, generation
+from harvest.desk.session import Hand, begin_anew, change, generation, tell
 from harvest.desk.typed import text_of
 from harvest.record.history import guard_note, unguard_note
 from harvest.record.numbers import parse_number
-from harvest.record.schema import NOTE, REMOVALS, YEAR
+from harvest.record.schema import NOTE, RECORD_FILE, REMOVALS, YEAR
 from harvest.workspace import Grid
 from harvest.workspace.document import tables_in
 from harvest.workspace.draft import Draft
@@ -56,9 +56,7 @@ def history_grid(hand: Hand) -> None:
         "A new year goes into the last row; rows marked at the left can be taken out. Empty: not known."
         " It is never taken for zero."
     )
-    for problem in hand.problems:
-        if problem.file != "record.toml":
-            show.problem(problem)
+    _problems(hand)
     _missing_columns(hand, grid)
 
 
@@ -82,7 +80,7 @@ def _frame(grid: Grid) -> pd.DataFrame:
 def _columns(frame: pd.DataFrame) -> dict[str, Any]:
     told = {}
     for name in frame:
-        label = show.literal(name.replace("_", " "))
+        label = name.replace("_", " ")
         if pd.api.types.is_numeric_dtype(frame[name]):
             style = "%d" if name == YEAR else "localized"
             told[name] = st.column_config.NumberColumn(label, format=style, width=_WIDTH.get(name))
@@ -102,7 +100,13 @@ def _save(key: str) -> None:
 
     def alter(draft: Draft) -> Draft:
         theirs = draft.grid
-        return draft.with_grid(mine if theirs is None else merged(last, mine, theirs))
+        together = mine if theirs is None else merged(last, mine, theirs)
+        if together is None:
+            tell(
+                "Another window changed this history too, and the two do not fit together. Yours holds; Undo shows it."
+                " as it was before."
+            )
+        return draft.with_grid(mine if together is None else together)
 
     change("the history", alter)
 
@@ -184,6 +188,11 @@ def raw_history(hand: Hand) -> None:
         height=300,
         on_change=lambda: change("the history's text", lambda d: Draft(d.record_text, st.session_state[key])),
     )
+    _problems(hand)
+
+
+def _problems(hand: Hand) -> None:
+    """What is wrong with the history."""
     for problem in hand.problems:
-        if problem.file != "record.toml":
+        if problem.file != RECORD_FILE:
             show.problem(problem)

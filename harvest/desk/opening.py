@@ -32,7 +32,7 @@ def welcome() -> None:
             label = results_name(name)
             st.button(show.literal(label), key=f"demo {name}", on_click=_open_demo, args=(name,))
     show.head("Or bring your own data")
-    with st.container(horizontal=True):
+    with st.container(horizontal=True, vertical_alignment="center"):
         frame.link(frame.BRING, "Upload a sheet, a record's workbook or the filled-in template")
         st.button("Start with an empty record", key="empty", on_click=_open_empty)
     other_records()

@@ -88,11 +88,10 @@ def in_hand() -> Hand | None:
 
 
 def change(what: str, alter: Callable[[Draft], Draft]) -> None:
-    """Alter the record on disk; for widgets' callbacks, so a refusal is kept for :func:`trouble`."""
+    """Alter the record on disk; for widgets' callbacks, so a refusal is kept for the top of the page."""
     name = st.session_state[ADDRESS]
     try:
-        before = workspace().entry(name).version
-        version = workspace().change(name, alter, what)
+        before, version = workspace().change(name, alter, what)
     except HarvestError as error:
         tell(str(error))
         return

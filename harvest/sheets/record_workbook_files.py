@@ -64,7 +64,7 @@ def workbook_to_folder(path: Path, folder: Path) -> tuple[Record, tuple[Problem,
     SettingsError
         When the file cannot be read, the folder is not new or empty, or cannot be written to.
     """
-    checked = check_record_workbook(path.name, _read(path))
+    checked = check_record_workbook(path.name, read_workbook_file(path))
     if checked.record is None:
         raise RecordError(checked.problems)
     _check_new(folder)
@@ -83,7 +83,7 @@ def _check_new(folder: Path) -> None:
         )
 
 
-def _read(path: Path) -> bytes:
+def read_workbook_file(path: Path) -> bytes:
     """The file's bytes; of one that is too large only so many that it is refused."""
     try:
         with path.open("rb") as stream:

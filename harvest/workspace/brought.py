@@ -5,16 +5,18 @@ from __future__ import annotations
 import hashlib
 import json
 import re
+from collections.abc import Callable
 from contextlib import suppress
 from pathlib import Path
 from typing import Any
 
 from harvest.errors import SettingsError
-from harvest.writing import write_whole
+from harvest.writing import hold_folder, write_whole
 
 #: Uploaded files that are kept; the oldest go.
 KEPT = 20
 _ID = re.compile("[0-9a-f]{16}")
+_GONE = "the uploaded file is not there any more: upload it again"
 
 
 class Brought:
@@ -32,15 +34,20 @@ class Brought:
             Where it cannot be written.
         """
         file = hashlib.sha256(name.encode() + b"\0" + data).hexdigest()[:16]
-        if not self._data(file).exists():
+        if not self.has(file):
             write_whole(self._data(file), data)
-            self.say(file, {"name": name})
+            write_whole(self._said(file), json.dumps({"name": name}, ensure_ascii=False).encode())
         self._drop_old()
         return file
 
     def has(self, file: object) -> bool:
         """Whether there is such a file; False for anything that is no id."""
-        return isinstance(file, str) and bool(_ID.fullmatch(file)) and self._said(file).is_file()
+        if not isinstance(file, str) or not _ID.fullmatch(file) or not self._data(file).is_file():
+            return False
+        try:
+            return isinstance(self.said(file)["name"], str)
+        except (SettingsError, KeyError):
+            return False
 
     def load(self, file: str) -> tuple[str, bytes]:
         """Name and content.
@@ -52,17 +59,29 @@ class Brought:
         """
         try:
             return str(self.said(file)["name"]), self._data(file).read_bytes()
-        except (OSError, ValueError, KeyError) as error:
-            raise SettingsError("the uploaded file is not there any more: upload it again") from error
+        except (OSError, KeyError) as error:
+            raise SettingsError(_GONE) from error
 
     def said(self, file: str) -> dict[str, Any]:
-        """What was said about a file so far, its name among it."""
-        content: dict[str, Any] = json.loads(self._said(file).read_text("utf-8"))
-        return content
+        """What was said about a file so far, its name among it.
 
-    def say(self, file: str, content: dict[str, Any]) -> None:
-        """Keep what was said about a file."""
-        write_whole(self._said(file), json.dumps(content, ensure_ascii=False).encode())
+        Raises
+        ------
+        SettingsError
+            Where there is no such file, or what was said cannot be read.
+        """
+        try:
+            content = json.loads(self._said(file).read_text("utf-8"))
+        except (OSError, ValueError) as error:
+            raise SettingsError(_GONE) from error
+        return content if isinstance(content, dict) else {}
+
+    def say(self, file: str, alter: Callable[[dict[str, Any]], dict[str, Any]]) -> dict[str, Any]:
+        """Keep what is said about a file: ``alter`` gives it for what was said so far, in whatever window."""
+        with hold_folder(self.folder):
+            content = alter(self.said(file))
+            write_whole(self._said(file), json.dumps(content, ensure_ascii=False).encode())
+        return content
 
     def _data(self, file: str) -> Path:
         return self.folder / f"{file}.data"

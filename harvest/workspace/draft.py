@@ -62,13 +62,13 @@ class Draft:
 
     @property
     def grid(self) -> Grid | None:
-        """The history's cells; None where its rows cannot be told apart by commas."""
+        """The history's cells; None where rows or columns cannot be told apart."""
         try:
             rows = [row for row in csv.reader(io.StringIO(self.history_text), strict=True) if any(map(str.strip, row))]
         except csv.Error:
             return None
         names = [name.strip() for name in rows[0]] if rows else []
-        if YEAR not in names:
+        if YEAR not in names or len(set(names)) < len(names):
             return None
         width, note = max(map(len, rows)), names.index(NOTE) if NOTE in names else -1
         header, *body = [

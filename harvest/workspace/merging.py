@@ -5,41 +5,50 @@ from __future__ import annotations
 from harvest.record.schema import YEAR
 from harvest.workspace.draft import Grid
 
+Row = tuple[str, ...]
 
-def merged(base: Grid, mine: Grid, theirs: Grid) -> Grid:
+
+def merged(base: Grid, mine: Grid, theirs: Grid) -> Grid | None:
     """My changes since ``base``, made to ``theirs``; rows are told by their year.
 
-    Where rows cannot be told by their year (a year is missing or stands twice), or the columns differ, mine holds as
-    it is: theirs stays among the earlier versions.
+    Rows without a year yet, as a new one is at first, are kept at the end. None where the two cannot be put
+    together: a year stands twice, or the columns differ.
     """
     if theirs == base:
         return mine
+    if not base.header == mine.header == theirs.header:
+        return None
     tables = [_by_year(grid) for grid in (base, mine, theirs)]
-    if any(table is None for table in tables) or not base.header == mine.header == theirs.header:
-        return mine
-    old, my, their = (table or {} for table in tables)
-    result: dict[str, tuple[str, ...]] = {}
+    if any(table is None for table in tables):
+        return None
+    (old, old_loose), (my, my_loose), (their, their_loose) = (table or ({}, []) for table in tables)
+    rows: dict[str, Row] = {}
     for year, row in their.items():
-        if year in old and year not in my:
-            continue
         before, now = old.get(year), my.get(year)
+        if before is not None and now is None:
+            continue
         if now is None or before == now:
-            result[year] = row
+            rows[year] = row
         elif before is None:
-            result[year] = now
+            rows[year] = now
         else:
-            result[year] = tuple(n if n != b else t for b, n, t in zip(before, now, row, strict=True))
-    for year, row in my.items():
-        if year not in their and old.get(year) != row:
-            result[year] = row
-    return Grid(mine.header, tuple(result[year] for year in sorted(result)))
+            rows[year] = tuple(n if n != b else t for b, n, t in zip(before, now, row, strict=True))
+    rows |= {year: row for year, row in my.items() if year not in their and old.get(year) != row}
+    loose = [*my_loose, *(row for row in their_loose if row not in old_loose and row not in my_loose)]
+    return Grid(mine.header, (*(rows[year] for year in sorted(rows)), *loose))
 
 
-def _by_year(grid: Grid) -> dict[str, tuple[str, ...]] | None:
-    if YEAR not in grid.header:
-        return None
-    place = grid.header.index(YEAR)
-    years = [row[place] for row in grid.rows]
-    if len(set(years)) != len(years) or not all(year.isdecimal() and len(year) == 4 for year in years):
-        return None
-    return dict(zip(years, grid.rows, strict=True))
+def _by_year(grid: Grid) -> tuple[dict[str, Row], list[Row]] | None:
+    """Rows by year, and those without one; None where a year stands twice."""
+    place = grid.header.index(YEAR) if YEAR in grid.header else None
+    dated: dict[str, Row] = {}
+    loose: list[Row] = []
+    for row in grid.rows:
+        year = "" if place is None else row[place]
+        if not (year.isdecimal() and len(year) == 4):
+            loose.append(row)
+        elif year in dated:
+            return None
+        else:
+            dated[year] = row
+    return dated, loose

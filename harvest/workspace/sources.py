@@ -11,8 +11,9 @@ from harvest.errors import Problem, RecordError, SettingsError
 from harvest.record.files import read_text
 from harvest.record.reporting import Report
 from harvest.record.schema import MAX_HISTORY_BYTES, MAX_RECORD_BYTES, RECORD_FILE
-from harvest.record.template import blank_record_files, demo_folder
-from harvest.sheets.record_workbook import check_record_workbook, is_record_workbook, read_record_workbook
+from harvest.record.template import demo_folder
+from harvest.sheets.record_workbook import check_record_workbook, is_record_workbook
+from harvest.sheets.record_workbook_files import read_workbook_file
 from harvest.workspace.draft import Draft
 from harvest.workspace.store import Workspace
 
@@ -52,13 +53,8 @@ def empty_draft() -> Draft:
     return Draft(_FIRST, "year,removals\n")
 
 
-def template_draft() -> Draft:
-    """The commented template with its invented numbers."""
-    return Draft(*blank_record_files())
-
-
 def draft_of_history(name: str, history_text: str, surveys: list[dict[str, str]]) -> Draft:
-    """A draft that has a history and its surveys, and lacks the rest.
+    """A draft that has a history and its surveys, and lacks the rest, whether they are indices among it.
 
     Parameters
     ----------
@@ -67,27 +63,46 @@ def draft_of_history(name: str, history_text: str, surveys: list[dict[str, str]]
     """
     draft = Draft(_FIRST, history_text).with_value("", None, "name", name)
     for number, survey in enumerate(surveys):
-        for key, value in {**survey, "kind": "absolute"}.items():
+        for key, value in survey.items():
             draft = draft.with_value("survey", number, key, value)
     return draft
 
 
+def surveys_leaving(draft: Draft, surveys: list[dict[str, str]]) -> list[str]:
+    """Names of the surveys that :func:`with_history` takes out, as no column is theirs any more."""
+    old, new = _unmatched(draft, surveys)
+    return [] if len(old) == len(new) == 1 else [str(_surveys(draft)[n].get("name", "?")) for n in old]
+
+
 def with_history(draft: Draft, history_text: str, surveys: list[dict[str, str]]) -> Draft:
-    """A draft with another history; surveys that it does not know by their column yet are added to it."""
+    """A draft with another history.
+
+    A survey stays where its column does; where just one survey on each side has no partner, the old one takes the
+    new column and keeps all else that is known of it. Others go, and new ones come (:func:`surveys_leaving`).
+    """
     draft = Draft(draft.record_text, history_text)
-    columns = [survey["column"] for survey in surveys]
-    gone = [n for n, s in enumerate(_surveys(draft)) if s.get("column") not in columns]
-    for number in reversed(gone):
+    old, new = _unmatched(draft, surveys)
+    if len(old) == len(new) == 1:
+        draft = draft.with_value("survey", old[0], "column", new[0]["column"])
+        old = []
+    for number in reversed(old):
         draft = draft.without_table("survey", number)
-    kept = [s.get("column") for s in _surveys(draft)]
     for survey in surveys:
-        number = kept.index(survey["column"]) if survey["column"] in kept else len(_surveys(draft))
-        if number == len(_surveys(draft)):
-            draft = draft.with_value("survey", number, "name", survey["name"])
-            draft = draft.with_value("survey", number, "column", survey["column"])
-            draft = draft.with_value("survey", number, "kind", "absolute")
-        draft = draft.with_value("survey", number, "cv_column", survey.get("cv_column"))
+        columns = [s.get("column") for s in _surveys(draft)]
+        if survey["column"] not in columns:
+            draft = draft.with_value("survey", len(columns), "name", survey["name"])
+            draft = draft.with_value("survey", len(columns), "column", survey["column"])
+            columns.append(survey["column"])
+        draft = draft.with_value("survey", columns.index(survey["column"]), "cv_column", survey.get("cv_column"))
     return draft
+
+
+def _unmatched(draft: Draft, surveys: list[dict[str, str]]) -> tuple[list[int], list[dict[str, str]]]:
+    """Numbers of the draft's surveys whose column is not among the new ones, and the new ones that it lacks."""
+    columns = [s.get("column") for s in _surveys(draft)]
+    named = [survey["column"] for survey in surveys]
+    old = [n for n, column in enumerate(columns) if column not in named]
+    return old, [survey for survey in surveys if survey["column"] not in columns]
 
 
 def _surveys(draft: Draft) -> list[dict[str, object]]:
@@ -98,17 +113,23 @@ def _surveys(draft: Draft) -> list[dict[str, object]]:
 def draft_of_upload(name: str, data: bytes) -> tuple[Draft, tuple[Problem, ...]] | None:
     """The draft in a file that is a whole record, its workbook or its packed folder; None for any other file.
 
-    With it come the problems that the draft itself does not show, such as formulas in the workbook.
+    With it come warnings that the draft itself does not show, such as formulas whose last values were read.
 
     Raises
     ------
     HarvestError
-        Where it is one and cannot be read.
+        Where it is one and cannot be read, or holds what the draft would lose, such as a formula without a value.
     """
     if is_record_workbook(data):
-        checked = check_record_workbook(name, data)
-        return Draft(checked.record_text, checked.history_text), checked.beyond
+        return _draft_of_workbook(name, data)
     return (draft_of_zip(name, data), ()) if name.lower().endswith(".zip") else None
+
+
+def _draft_of_workbook(name: str, data: bytes) -> tuple[Draft, tuple[Problem, ...]]:
+    checked = check_record_workbook(name, data)
+    if any(problem.severity == "error" for problem in checked.beyond):
+        raise RecordError(checked.beyond)
+    return Draft(checked.record_text, checked.history_text), checked.beyond
 
 
 def draft_of_zip(name: str, data: bytes) -> Draft:
@@ -170,11 +191,8 @@ def open_path(workspace: Workspace, path: Path) -> str:
     """
     if path.suffix.lower() != ".xlsx":
         return open_folder(workspace, path)
-    try:
-        data = path.read_bytes()
-    except OSError as error:
-        raise SettingsError(f"{str(path)!r} cannot be read: {error.strerror}. Check its name.") from error
-    draft, source = Draft(*read_record_workbook(path.name, data)), str(path.resolve())
+    data = read_workbook_file(path)
+    draft, source = _draft_of_workbook(path.name, data)[0], str(path.resolve())
     found = workspace.find(source, draft)
     return found or workspace.add(draft, f"a copy of the workbook {path.name}", source)
 

@@ -131,8 +131,8 @@ class Workspace:
             raise _refusal(home, error) from error
         return record
 
-    def change(self, record: str, alter: Callable[[Draft], Draft], what: str) -> int:
-        """Alter the draft in force; the number of the version in force then, which stays where nothing changed.
+    def change(self, record: str, alter: Callable[[Draft], Draft], what: str) -> tuple[int, int]:
+        """Alter the draft in force; the versions in force before and then, the same where nothing changed.
 
         Parameters
         ----------
@@ -147,7 +147,7 @@ class Workspace:
                 version = self._version(home)
                 old = _read_draft(_place(home, version))
                 new = alter(old)
-                return version if new == old else self._write(home, new, version, what)
+                return version, version if new == old else self._write(home, new, version, what)
         except (OSError, ValueError) as error:
             raise _refusal(home, error) from error
 
@@ -220,9 +220,21 @@ class Workspace:
             shutil.rmtree(unfinished, ignore_errors=True)
             raise
         write_whole(home / _CURRENT, str(version).encode())
-        for old in _versions(home)[1:-KEPT]:  # the first stays: it is what was brought
+        for old in set(_versions(home)) - self._worth_keeping(home, version):
             shutil.rmtree(_place(home, old), ignore_errors=True)
         return version
+
+    def _worth_keeping(self, home: Path, version: int) -> set[int]:
+        """The first version, which is what was brought, the latest ones, and those that undo leads back to."""
+        there = _versions(home)
+        kept = {there[0], *there[-KEPT:]}
+        older: int | None = version
+        for _ in range(KEPT):
+            if older is None or not _place(home, older).is_dir():
+                break
+            kept.add(older)
+            older = _read_json(_place(home, older) / _ABOUT)["parent"]
+        return kept
 
 
 def _place(home: Path, version: int) -> Path:

@@ -47,7 +47,7 @@ class Screen(HTMLParser):
         self.texts: list[tuple[str, str]] = []
         self.tables: list[list[list[str]]] = []
         self._open: list[tuple[str, str]] = []
-        for element in at.get("html"):
+        for element in at.main.get("html"):
             if "hv-" in element.value and not element.value.lstrip().startswith("<style"):
                 self.feed(element.value)
         self.close()

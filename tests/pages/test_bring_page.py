@@ -145,3 +145,22 @@ def test_an_unknown_file_in_the_address_is_let_go(file: str) -> None:
     at = open_page("bring", sheet=file)
     assert read(at).title == "Bring your own sheet"
     assert "sheet" not in at.query_params
+
+
+def test_a_header_beyond_the_sheet_is_held_within_it(space: Workspace) -> None:
+    data = b"year,removals,count\n2020,5,90\n2021,6,80\n2022,7,85\n"
+    at = upload(open_page("bring"), "herd.csv", data)
+    widget(at.number_input, "end").set_value(2).run()
+    widget(at.number_input, "first").set_value(4).run()
+    assert read(at).title == ASKING
+    widget(at.number_input, "first").set_value(1).run()
+    widget(at.number_input, "end").set_value(1).run()
+    assert read(at).title == READY
+
+
+def test_an_index_alone_says_what_is_missing_and_leads_on(space: Workspace) -> None:
+    draft = draft_of_demo("lake").with_value("survey", 1, "kind", "index")
+    at = open_page("start", space.add(draft, "a test"))
+    assert read(at).title == "This cannot be computed yet"
+    assert len(at.get("progress")) == 0
+    assert any("absolute count" in text for text in read(at).said)

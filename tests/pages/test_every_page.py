@@ -10,8 +10,9 @@ from harvest.errors import CAUTION
 from harvest.plan import words
 from harvest.plan.sentences import headline
 from harvest.record import demo_names
+from harvest.record.template import blank_record_files
 from harvest.workspace import Draft, Workspace
-from harvest.workspace.sources import draft_of_demo, empty_draft, open_demo, template_draft
+from harvest.workspace.sources import draft_of_demo, empty_draft, open_demo
 from harvest.yields import summarise_yield
 from tests.pages.screen import PAGES, demo, draws, open_page, present_thresholds, read, table
 
@@ -108,7 +109,7 @@ def test_every_error_stands_once_in_its_part(space: Workspace, fault: str) -> No
 
 
 def test_a_record_of_the_template(space: Workspace) -> None:
-    at = open_page("sustain", space.add(template_draft(), "a test"))
+    at = open_page("sustain", space.add(Draft(*blank_record_files()), "a test"))
     assert read(at).title.startswith("It can sustain at most about ")
 
 

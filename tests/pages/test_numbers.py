@@ -8,8 +8,7 @@ import pytest
 
 from harvest.desk.cards import season_cards
 from harvest.errors import CAUTION
-from harvest.futures.recommend import recommend_quota
-from harvest.plan import words
+from harvest.plan import make_quota_table, words
 from harvest.plan.layout import parts, shown
 from harvest.plan.sentences import findings
 from harvest.plan.spreads import HEADINGS
@@ -116,7 +115,7 @@ def test_another_tolerance(space: Workspace, name: str) -> None:
         return
     for tolerance in (0.01, 0.2):
         at.select_slider[0].set_value(tolerance).run()
-        advice = recommend_quota(demo(name), base.curve, "limit", tolerance=tolerance, horizon=base.horizon)
+        advice = make_quota_table(demo(name), draws(name), tolerance=tolerance).recommendation
         quota = f"{words.number(advice.quota, demo(name).unit)} {words.kind(demo(name))} a year"
         assert f"A tolerance of {words.percent(tolerance)} allows {quota}." in read(at).said
 

@@ -18,7 +18,7 @@ def test_a_file_is_kept_with_what_is_said(tmp_path: Path) -> None:
     file = kept.keep("häufig, <b>.xlsx", b"\0data")
     assert kept.has(file)
     assert kept.load(file) == ("häufig, <b>.xlsx", b"\0data")
-    kept.say(file, {"name": "häufig, <b>.xlsx", "answers": {"thousands": "yes"}})
+    kept.say(file, lambda said: {**said, "answers": {"thousands": "yes"}})
     assert kept.keep("häufig, <b>.xlsx", b"\0data") == file
     assert kept.said(file)["answers"] == {"thousands": "yes"}
     assert Brought(tmp_path).load(file) == ("häufig, <b>.xlsx", b"\0data")
@@ -60,3 +60,23 @@ def test_a_folder_that_cannot_be_written_is_told(tmp_path: Path) -> None:
     (tmp_path / "brought").write_text("")
     with pytest.raises(SettingsError, match="cannot be written"):
         Brought(tmp_path).keep("a.csv", b"x")
+
+
+def test_two_windows_answer_different_questions(tmp_path: Path) -> None:
+    one, other = Brought(tmp_path), Brought(tmp_path)
+    file = one.keep("counts.csv", b"year")
+    before = other.said(file)
+    one.say(file, lambda said: {**said, "one": 1})
+    assert before == {"name": "counts.csv"}
+    assert other.say(file, lambda said: {**said, "two": 2}) == {"name": "counts.csv", "one": 1, "two": 2}
+
+
+def test_what_was_said_and_is_broken_counts_as_gone(tmp_path: Path) -> None:
+    kept = Brought(tmp_path)
+    file = kept.keep("counts.csv", b"year")
+    (tmp_path / "brought" / f"{file}.json").write_text('{"name": "cou')
+    assert not kept.has(file)
+    with pytest.raises(SettingsError, match="upload it again"):
+        kept.said(file)
+    assert kept.keep("counts.csv", b"year") == file
+    assert kept.load(file) == ("counts.csv", b"year")

@@ -60,16 +60,31 @@ def test_changes_are_put_together(mine: Grid, theirs: Grid, result: Grid | None)
 
 
 @pytest.mark.parametrize(
+    ("mine", "result"),
+    [
+        # a new year is a row without one at first
+        (
+            grid("2020,5,", "2021,6,wet", "2022,7,", ",,note"),
+            grid("2020,50,", "2021,60,wet", "2022,70,", ",,note"),
+        ),
+        # a year that was cleared, or half typed, keeps its row
+        (grid(",5,", "2021,6,wet", "2022,7,"), grid("2021,60,wet", "2022,70,", ",5,")),
+        (grid("20,5,", "2021,6,wet", "2022,7,"), grid("2021,60,wet", "2022,70,", "20,5,")),
+    ],
+)
+def test_rows_without_a_year_are_kept_beside_theirs(mine: Grid, result: Grid) -> None:
+    assert merged(BASE, mine, grid("2020,50,", "2021,60,wet", "2022,70,")) == result
+
+
+@pytest.mark.parametrize(
     "mine",
     [
         grid("2020,5,", "2020,6,wet", "2022,7,"),
-        grid(",5,", "2021,6,wet", "2022,7,"),
-        grid("20,5,", "2021,6,wet", "2022,7,"),
         grid("2020,5", header=("year", "removals")),
         grid("5,", header=("removals", "note")),
     ],
 )
-def test_mine_holds_where_rows_cannot_be_told_apart(mine: Grid) -> None:
+def test_what_cannot_be_put_together_is_told(mine: Grid) -> None:
     theirs = grid("2020,50,", "2021,60,wet", "2022,70,")
-    assert merged(BASE, mine, theirs) == mine
-    assert merged(BASE, theirs, mine) == theirs
+    assert merged(BASE, mine, theirs) is None
+    assert merged(BASE, theirs, mine) is None

@@ -8,10 +8,12 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from openpyxl import load_workbook
 
 from harvest.errors import RecordError, SettingsError
 from harvest.record import demo_folder, demo_names, read_record
 from harvest.record.schema import MAX_HISTORY_BYTES, MAX_RECORD_BYTES
+from harvest.record.template import blank_record_files
 from harvest.sheets.record_workbook import record_workbook
 from harvest.workspace import Draft, Workspace
 from harvest.workspace.sources import (
@@ -25,7 +27,7 @@ from harvest.workspace.sources import (
     open_demo,
     open_folder,
     open_path,
-    template_draft,
+    surveys_leaving,
     with_history,
 )
 from tests.record.edits import CSV, TOML
@@ -53,7 +55,7 @@ def test_a_demo_is_its_folder_to_the_letter(name: str) -> None:
 
 
 def test_the_template_is_sound_and_an_empty_record_is_not() -> None:
-    assert template_draft().check()[0] is not None
+    assert Draft(*blank_record_files()).check()[0] is not None
     record, problems = empty_draft().check()
     assert record is None
     assert {"unit", "season", "count_when", "lag", "curve"} <= {p.where for p in problems if p.found == "nothing"}
@@ -165,7 +167,7 @@ def test_a_sheet_becomes_a_draft() -> None:
     assert draft.document == {
         "format": 1,
         "name": "Hares",
-        "survey": [{"name": "strip", "column": "strip", "kind": "absolute", "cv_column": "strip_cv"}],
+        "survey": [{"name": "strip", "column": "strip", "cv_column": "strip_cv"}],
     }
     assert draft.history_text == CSV
 
@@ -189,12 +191,21 @@ PELLETS = {"name": "pellets", "column": "pellets", "kind": "index", "cv": 0.3}
         ([], []),
         ([{"name": "x", "column": "pellets"}], [PELLETS]),
         ([{"name": "x", "column": "pellets"}, {"name": "x", "column": "ground", "cv_column": "cv"}], None),
-        ([{"name": "new", "column": "new"}], [{"name": "new", "column": "new", "kind": "absolute"}]),
+        ([{"name": "new", "column": "new"}], [{"name": "new", "column": "new"}]),
     ],
 )
 def test_another_history_keeps_the_surveys_that_it_has(brought: list[dict[str, str]], surveys: Any) -> None:
     both = [{**GROUND, "cv_column": "cv"}, PELLETS]
     assert surveys_after(None, brought) == (both if surveys is None else surveys)
+
+
+def test_a_survey_whose_column_has_another_name_keeps_what_is_known_of_it() -> None:
+    document = {"name": "herd", "survey": [{**GROUND, "detection_limit": 5}]}
+    renamed = surveys_after(document, [{"name": "x", "column": "drive", "cv_column": "drive_cv"}])
+    assert renamed == [{**GROUND, "column": "drive", "cv_column": "drive_cv", "detection_limit": 5}]
+    draft = Draft("", "").with_document(document)
+    assert surveys_leaving(draft, [{"name": "x", "column": "drive"}]) == []
+    assert surveys_leaving(draft, []) == ["ground"]
 
 
 def test_another_history_for_surveys_that_are_faulty() -> None:
@@ -240,3 +251,20 @@ def test_a_workbook_is_opened_by_its_path(tmp_path: Path) -> None:
     assert open_path(space, path) == first
     with pytest.raises(SettingsError, match=r"missing\.xlsx' cannot be read"):
         open_path(space, tmp_path / "missing.xlsx")
+
+
+def test_a_workbook_that_would_lose_a_value_is_refused(tmp_path: Path) -> None:
+    """A formula without a stored value: taken over, the limit would silently be gone."""
+    record = draft_of_demo("deer").check()[0]
+    assert record is not None
+    book = load_workbook(io.BytesIO(record_workbook(record)))
+    (cell,) = [c for sheet in book for row in sheet.iter_rows() for c in row if c.value == 1200]
+    cell.value = "=1000+200"
+    stream = io.BytesIO()
+    book.save(stream)
+    with pytest.raises(RecordError, match="formula"):
+        draft_of_upload("deer.xlsx", stream.getvalue())
+    path = tmp_path / "deer.xlsx"
+    path.write_bytes(stream.getvalue())
+    with pytest.raises(RecordError, match="formula"):
+        open_path(Workspace(tmp_path / "space"), path)

@@ -58,14 +58,14 @@ def test_an_empty_workspace(space: Workspace) -> None:
 
 
 def test_a_change_is_a_new_version(space: Workspace, record: str) -> None:
-    assert space.change(record, named("Second"), "the name") == 2
+    assert space.change(record, named("Second"), "the name") == (1, 2)
     entry = space.entry(record)
     assert (entry.name, entry.version, entry.what, entry.before, entry.after) == ("Second", 2, "the name", True, False)
     assert space.load(record) == named("Second")(FIRST)
 
 
 def test_what_changes_nothing_is_no_version(space: Workspace, record: str) -> None:
-    assert space.change(record, lambda draft: draft, "nothing") == 1
+    assert space.change(record, lambda draft: draft, "nothing") == (1, 1)
     assert not space.entry(record).before
 
 
@@ -90,7 +90,7 @@ def test_undo_and_redo_go_along_the_chain(space: Workspace, record: str) -> None
 def test_a_change_after_an_undo_begins_a_new_chain(space: Workspace, record: str) -> None:
     space.change(record, named("Second"), "the name")
     space.undo(record)
-    assert space.change(record, named("Other"), "the name") == 3
+    assert space.change(record, named("Other"), "the name") == (1, 3)
     assert not space.redo(record)
     assert not space.entry(record).after
     assert space.undo(record)
@@ -241,7 +241,7 @@ def test_an_error_at_any_step_leaves_the_old_version(tmp_path: Path, action: str
                 assert "No space left on device" in str(error)
         names = {False: ("Changed", "Test herd"), True: ("Second", "Changed", "Test herd")}[failed]
         assert space.load(record).name in names
-        assert space.change(record, named("After"), "the name") > 2
+        assert space.change(record, named("After"), "the name")[1] > 2
         assert space.load(record).name == "After"
         assert not [p for p in (space.folder / record).iterdir() if p.name.startswith(".")]
         shutil.rmtree(space.folder)
@@ -266,7 +266,7 @@ def test_a_process_killed_at_any_step_leaves_a_whole_version(tmp_path: Path, aft
         assert os.WIFSIGNALED(status)
         assert os.WTERMSIG(status) == signal.SIGKILL
         assert space.load(record) in (named("Second")(FIRST), named("Changed")(FIRST))
-        assert space.change(record, named("After"), "the name") > 2
+        assert space.change(record, named("After"), "the name")[1] > 2
         assert space.load(record) == named("After")(FIRST)
         shutil.rmtree(space.folder)
 
@@ -291,3 +291,18 @@ def test_texts_that_no_file_can_hold_are_told(space: Workspace, record: str) -> 
         space.change(record, lambda d: Draft(d.record_text, "\ud800"), "the history")
     assert [e.id for e in space.entries()] == [record]
     assert space.load(record) == FIRST
+
+
+def test_undo_reaches_back_after_a_long_way_back_and_a_change(
+    space: Workspace, record: str, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(store, "KEPT", 5)
+    for number in range(6):
+        space.change(record, named(f"Name {number}"), "the name")
+    for _ in range(4):
+        assert space.undo(record)
+    held = space.load(record)
+    space.change(record, named("Anew"), "the name")
+    assert space.entry(record).before
+    assert space.undo(record)
+    assert space.load(record) == held
