@@ -69,8 +69,9 @@ def table_of(record: Record) -> QuotaTable | None:
     def make(report: Report) -> QuotaTable:
         from harvest.plan import make_quota_table
 
-        return make_quota_table(record, rates_of(record), report=report)
+        return make_quota_table(record, rates, report=report)
 
+    rates = rates_of(record)
     return _at_work(("table", record.digest()), "the quota and its risk: some seconds", make)
 
 

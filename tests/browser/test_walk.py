@@ -58,6 +58,8 @@ def fill_in(desk: Desk) -> None:
     desk.choose("Season", "short")
     desk.choose("When counts happen", "before")
     desk.type("Years from the count to its quota", "0")
+    desk.part("Surveys")
+    desk.choose("Kind", "absolute")
     desk.part("Growth")
     desk.press("Add a growth curve")
     for number, (name, low, high) in enumerate(RANGES):
@@ -95,7 +97,7 @@ def test_the_walk_from_a_sheet_to_the_files(window, files, tmp_path):
     assert desk.title == "Ready to take over"
     desk.type("Name of the population", "Roe deer of the moor")
     desk.press("As a new record")
-    assert desk.title == "The record: 5 things to mend"
+    assert desk.title == "The record: 6 things to mend"
     assert "Population · 4 to mend" in desk.text
 
     fill_in(desk)
