@@ -9,7 +9,7 @@ import numpy as np
 
 from harvest.kernels.codes import AFTER, SHORT
 from harvest.kernels.compiling import kernel
-from harvest.kernels.growth import ALLEE, growth
+from harvest.kernels.growth import ALLEE, RICKER, growth
 
 #: Twice the spacing of floating-point numbers near one.
 EPSILON = 4.5e-16
@@ -67,8 +67,31 @@ def equilibria(curve, r, k, s, peak, msy, removals, lower, upper):
 
 
 @kernel()
+def first_top(r, k, s):
+    """N up to which Ricker's yearly map S(N) rises before it falls; infinity where it never falls.
+
+    With y = (N/K) ln(a/m) it solves (y − 1) e^−y = s/a. The left side rises from 0 at y = 1 to e^−2 at y = 2 and is
+    concave between: Newton's steps from y = 1 approach the root from below.
+    """
+    m = 1.0 - s
+    share = s / (r + m)
+    if share >= np.exp(-2.0):
+        return np.inf
+    y = 1.0
+    for _ in range(100):
+        step = (share * np.exp(y) - (y - 1.0)) / (2.0 - y)
+        if not step > EPSILON:
+            break
+        y += step
+    return y * k / np.log1p(r / m)
+
+
+@kernel()
 def holding_yield(season, curve, r, k, s, x, out):
-    """Removals that hold the season's starting abundance x: g(x), or x − B with S(B) = x; 0 where g(x) ≤ 0."""
+    """Removals that hold the season's starting abundance x: g(x), or x − B with S(B) = x; 0 where g(x) ≤ 0.
+
+    Where Ricker's map rises, falls and rises again, up to three B give the same x: the least, so the greatest take.
+    """
     for i in range(r.shape[0]):
         now = growth(curve[i], x[i], r[i], k[i], s[i])
         if not now > 0.0:
@@ -76,7 +99,12 @@ def holding_yield(season, curve, r, k, s, x, out):
         elif season != SHORT:
             out[i] = now
         else:
-            out[i] = x[i] - crossing(1.0, curve[i], r[i], k[i], s[i], x[i], 0.0, x[i])
+            high = x[i]
+            if curve[i] == RICKER:
+                top = first_top(r[i], k[i], s[i])
+                if top < high and top + growth(RICKER, top, r[i], k[i], s[i]) >= high:
+                    high = top
+            out[i] = x[i] - crossing(1.0, curve[i], r[i], k[i], s[i], x[i], 0.0, high)
 
 
 @kernel()

@@ -2,7 +2,8 @@
 
 ``n`` abundance (≥ 0), ``r`` per year, ``k`` carrying capacity, ``s`` the curve's shape; ``out`` the yearly
 growth g(N), so that the yearly map is S(N) = max(0, N + g(N)). Sources: Schaefer 1954; Pella & Tomlinson 1969
-and Gilpin & Ayala 1973; Fox 1970; the Gompertz map; the logistic with an Allee threshold (s = A/K).
+and Gilpin & Ayala 1973; Fox 1970; the Gompertz map; the logistic with an Allee threshold (s = A/K); Ricker 1954
+and Beverton & Holt 1957 with adult survival s: m = 1 − s, and recruits per adult at low abundance a = r + m.
 """
 
 from __future__ import annotations
@@ -12,7 +13,7 @@ import numpy as np
 from harvest.kernels.compiling import kernel
 from harvest.kernels.vectormath import exp, log
 
-LOGISTIC, THETA_LOGISTIC, FOX, GOMPERTZ, ALLEE = 0, 1, 2, 3, 4
+LOGISTIC, THETA_LOGISTIC, FOX, GOMPERTZ, ALLEE, RICKER, BEVERTON_HOLT = 0, 1, 2, 3, 4, 5, 6
 _TINY = 1e-200
 
 
@@ -47,6 +48,19 @@ def allee(n, r, k, s):
 
 
 @kernel(inline=True)
+def ricker(n, r, k, s):
+    """a N exp(−N/K ln(a/m)) − m N, as m N (exp((1 − N/K) ln(a/m)) − 1): exactly zero at K, never below −m N."""
+    m = 1.0 - s
+    return m * n * (exp((1.0 - n / k) * log(1.0 + r / m)) - 1.0)
+
+
+@kernel(inline=True)
+def beverton_holt(n, r, k, s):
+    """a N/(1 + (r/m) N/K) − m N, as r N (1 − N/K)/(1 + (r/m) N/K): exactly zero at K."""
+    return r * n * (1.0 - n / k) / (1.0 + r / (1.0 - s) * (n / k))
+
+
+@kernel(inline=True)
 def growth(curve, n, r, k, s):
     """g(N) of one draw, for loops that run draw by draw."""
     if curve == LOGISTIC:
@@ -57,7 +71,11 @@ def growth(curve, n, r, k, s):
         return fox(n, r, k)
     if curve == GOMPERTZ:
         return gompertz(n, k, s)
-    return allee(n, r, k, s)
+    if curve == ALLEE:
+        return allee(n, r, k, s)
+    if curve == RICKER:
+        return ricker(n, r, k, s)
+    return beverton_holt(n, r, k, s)
 
 
 @kernel()
@@ -75,9 +93,15 @@ def fill_growth(curve, n, r, k, s, out):
     elif curve == GOMPERTZ:
         for j in range(n.shape[0]):
             out[j] = gompertz(n[j], k[j], s[j])
-    else:
+    elif curve == ALLEE:
         for j in range(n.shape[0]):
             out[j] = allee(n[j], r[j], k[j], s[j])
+    elif curve == RICKER:
+        for j in range(n.shape[0]):
+            out[j] = ricker(n[j], r[j], k[j], s[j])
+    else:
+        for j in range(n.shape[0]):
+            out[j] = beverton_holt(n[j], r[j], k[j], s[j])
 
 
 @kernel()

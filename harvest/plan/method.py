@@ -11,8 +11,14 @@ from harvest.plan.table import QuotaTable
 from harvest.population import BY_NAME
 from harvest.rates.approach import latest_usable_count
 
-#: Curves named after a person.
-_PROPER = {"fox": "Fox", "gompertz": "Gompertz", "allee": "Allee"}
+#: Curves named after people.
+_PROPER = {
+    "fox": "Fox",
+    "gompertz": "Gompertz",
+    "allee": "Allee",
+    "ricker": "Ricker",
+    "beverton-holt": "Beverton–Holt",
+}
 
 
 def method(table: QuotaTable) -> str:

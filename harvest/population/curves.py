@@ -10,6 +10,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
+from scipy import special
 
 from harvest.kernels import growth as kernels
 
@@ -59,6 +60,40 @@ def _allee_peak(r: Array, k: Array, s: Array) -> Array:
 def _allee_msy(r: Array, k: Array, s: Array) -> Array:
     n = _allee_peak(r, k, s)
     return r * n * (1.0 - n / k) * (n / k - s)
+
+
+def _ricker_log(r: Array, s: Array) -> Array:
+    """ln(a/m), m = 1 − s the adults' yearly mortality and a = r + m the recruits per adult at low abundance."""
+    return np.asarray(np.log1p(r / (1.0 - s)))
+
+
+def _ricker_scaled_peak(r: Array, s: Array) -> Array:
+    """y = (N*/K) ln(a/m) = 1 − W(e·m/a), Lambert's W by Wright's omega; Scheuerell 2016, doi:10.7717/peerj.1623."""
+    return np.asarray(1.0 - special.wrightomega(1.0 - _ricker_log(r, s)))
+
+
+def _ricker_peak(r: Array, k: Array, s: Array) -> Array:
+    return k * _ricker_scaled_peak(r, s) / _ricker_log(r, s)
+
+
+def _ricker_msy(r: Array, k: Array, s: Array) -> Array:
+    y = _ricker_scaled_peak(r, s)
+    return (1.0 - s) * _ricker_peak(r, k, s) * y / (1.0 - y)
+
+
+def _ricker_slope(n: Array, r: Array, k: Array, s: Array) -> Array:
+    log, x = _ricker_log(r, s), n / k
+    return (1.0 - s) * ((1.0 - log * x) * np.exp(log * (1.0 - x)) - 1.0)
+
+
+def _beverton_holt_root(r: Array, s: Array) -> Array:
+    """√(a/m), m = 1 − s and a = r + m as in Ricker's curve."""
+    return np.asarray(np.sqrt(1.0 + r / (1.0 - s)))
+
+
+def _beverton_holt_slope(n: Array, r: Array, k: Array, s: Array) -> Array:
+    m = 1.0 - s
+    return (r + m) / (1.0 + r / m * n / k) ** 2 - m
 
 
 LOGISTIC = Curve(
@@ -116,8 +151,31 @@ ALLEE = Curve(
     from_growth=lambda p, s, low: (4.0 * p / (1.0 - s) ** 2, s),
     source="the logistic with a threshold (Lewis & Kareiva 1993, doi:10.1006/tpbi.1993.1007)",
 )
+RICKER = Curve(
+    name="ricker",
+    code=kernels.RICKER,
+    shape="adult survival",
+    msy=_ricker_msy,
+    peak=_ricker_peak,
+    greatest_growth=lambda r, s: r * 1.0,
+    slope=_ricker_slope,
+    from_growth=lambda p, s, low: (p, s),
+    source="Ricker 1954, doi:10.1139/f54-039, with adult survival",
+)
+BEVERTON_HOLT = Curve(
+    name="beverton-holt",
+    code=kernels.BEVERTON_HOLT,
+    shape="adult survival",
+    msy=lambda r, k, s: r * k / (1.0 + _beverton_holt_root(r, s)) ** 2,
+    peak=lambda r, k, s: k / (1.0 + _beverton_holt_root(r, s)),
+    greatest_growth=lambda r, s: r * 1.0,
+    slope=_beverton_holt_slope,
+    from_growth=lambda p, s, low: (p, s),
+    # The DOI, of the 1993 reprint, is from memory.
+    source="Beverton & Holt 1957, doi:10.1007/978-94-011-2106-4, with adult survival",
+)
 
-CURVES: tuple[Curve, ...] = (LOGISTIC, THETA_LOGISTIC, FOX, GOMPERTZ, ALLEE)
+CURVES: tuple[Curve, ...] = (LOGISTIC, THETA_LOGISTIC, FOX, GOMPERTZ, ALLEE, RICKER, BEVERTON_HOLT)
 BY_NAME = {curve.name: curve for curve in CURVES}
 
 

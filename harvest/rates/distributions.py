@@ -28,6 +28,8 @@ DOMAINS: dict[str, Interval] = {
     "theta-logistic shape": POSITIVE,
     "gompertz shape": PROPORTION,
     "allee shape": PROPORTION,
+    "ricker shape": PROPORTION,
+    "beverton-holt shape": PROPORTION,
     "bias": POSITIVE,
     "wounding": POSITIVE,
     "unreported": POSITIVE,

@@ -19,7 +19,7 @@ COLUMNS = {
     "curve": "name of the growth curve",
     "r": "growth rate, per year (NaN for the Gompertz map)",
     "K": "carrying capacity, in the record's unit",
-    "shape": "θ, b or A/K (NaN where the curve has none)",
+    "shape": "θ, b, A/K or adult survival (NaN where the curve has none)",
     "sigma": "process noise, standard deviation of log",
     "sigma_demo": "demographic noise, standard deviation of log at one animal",
     "rho": "autocorrelation of the environment",

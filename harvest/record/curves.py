@@ -10,6 +10,8 @@ from harvest.record.reporting import Report, listed, nearest, show
 from harvest.record.tables import Values, get, place
 
 _GROWTH = ("growth_rate", "max_growth")
+#: Curves whose shape is the survival of adults.
+_SURVIVING = ("ricker", "beverton-holt")
 
 
 def check_curves(values: Values, report: Report) -> None:
@@ -28,6 +30,8 @@ def check_curves(values: Values, report: Report) -> None:
             report.error(place(where, "name"), show(name), "each curve stands once", cure)
         seen.add(name)
         _check_growth(name, curve, shared, f"{where} ({name})", report)
+        if name in _SURVIVING:
+            _check_survival(name, curve, values["life"], where, report)
         for key in ("carrying_capacity", "process_noise"):
             if key not in curve and key not in shared:
                 _report_missing(f"{where} ({name})", key, report)
@@ -59,6 +63,21 @@ def _check_gompertz(curve: Values, shared: Values, where: str, report: Report) -
     elif "shape" not in curve and "max_growth" not in curve and "max_growth" not in shared:
         cure = "Add shape (b, between 0 and 1) to this curve, or max_growth to it or to [rates]."
         report.error(where, "neither shape nor max_growth", "the Gompertz map needs one of the two", cure)
+
+
+def _check_survival(name: str, curve: Values, life: Values, where: str, report: Report) -> None:
+    """Ricker and Beverton–Holt state adult survival; that of the life history is suggested, never taken in silence."""
+    shape = get(curve, "shape")
+    if "shape" not in curve:
+        stated = get(life, "adult_survival")
+        cure = "Add shape = …, a number at least 0 and below 1, or a range; 0 where all adults die after breeding."
+        if stated is not None and stated < 1.0:
+            cure = f"Add shape = {stated:g} if adult_survival of [life] is meant, or a range around it."
+        rule = f'the shape of "{name}" is the yearly survival of adults without removals, and is needed'
+        report.error(place(where, "shape"), "nothing", rule, cure)
+    elif shape is not None and shape.kind == "90% between" and not shape["high"] < 1.0:
+        rule = 'both ends of "90% between" must lie inside 0 and 1 for a proportion'
+        report.error(place(where, "shape"), str(shape), rule, "Give an upper end below 1.")
 
 
 def _report_both(where: str, report: Report) -> None:

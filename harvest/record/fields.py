@@ -65,7 +65,9 @@ _PER_YEAR = "per year"
 #: Stands for animals or tonnes.
 OWN_UNIT = "the record's unit"
 _KEPT = "kept for the fit to the history, not used yet"
-_SHAPED = ("theta-logistic", "gompertz", "allee")
+_SHAPED = ("theta-logistic", "gompertz", "allee", "ricker", "beverton-holt")
+#: Adult survival: 0 is a population whose adults all die after breeding.
+_SURVIVAL = Interval(0, 1, high_open=True)
 _MAX_GROWTH = "Greatest growth per head per year (Fox, Gompertz: growth at low abundance)"
 
 
@@ -122,10 +124,12 @@ FIELDS: tuple[Field, ...] = (
     Field("curve", "weight", "number", "Weight of this curve against the others.", default=1.0,
           within=Interval(0, 1e6, low_open=True), example=1.0),
     Field("curve", "shape", "distribution", "Theta of the theta-logistic (above 0), b of the Gompertz "
-          "map, or A/K of the Allee curve (both between 0 and 1).",
-          within=Interval(0, 100, low_open=True), only_for=_SHAPED,
+          "map, A/K of the Allee curve (both between 0 and 1), or the yearly survival of adults without removals of "
+          "Ricker and Beverton-Holt (from 0, where all die after breeding, to below 1).",
+          within=Interval(0, 100), only_for=_SHAPED,
           needed_for=("theta-logistic", "allee"),
-          within_for=(("gompertz", INSIDE_0_1), ("allee", INSIDE_0_1)),
+          within_for=(("theta-logistic", Interval(0, 100, low_open=True)), ("gompertz", INSIDE_0_1),
+                      ("allee", INSIDE_0_1), ("ricker", _SURVIVAL), ("beverton-holt", _SURVIVAL)),
           example={"distribution": "triangular", "low": 1.0, "mode": 1.5, "high": 3.0}),
     Field("curve", "growth_rate", "distribution", "This curve's own growth rate r.", within=PER_YEAR,
           unit=_PER_YEAR, example=_between(0.2, 0.4)),

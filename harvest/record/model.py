@@ -18,7 +18,7 @@ COUNT_MOMENTS = {"short": ("before", "after"), "all year": ("start", "mean of ye
 #: The moments at which a record tells abundance: its absolute counts happen then, its limits are judged then.
 RECORD_MOMENTS = {"short": ("before", "after"), "all year": ("start",)}
 NOISE_CONVENTIONS = ("mean one", "median one")
-CURVES = ("logistic", "theta-logistic", "fox", "gompertz", "allee")
+CURVES = ("logistic", "theta-logistic", "fox", "gompertz", "allee", "ricker", "beverton-holt")
 SURVEY_KINDS = ("absolute", "index")
 RULES = ("fixed quota", "fixed share", "escapement", "ramp")
 #: A rule's share of the last quota in a year without a count, unless stated.
@@ -117,7 +117,8 @@ class CurveChoice:
     """One growth curve that the record allows, with its weight and the ranges that belong to it alone.
 
     ``rates`` may override ``growth_rate``, ``max_growth``, ``carrying_capacity`` or ``process_noise`` and
-    holds the curve's own ``shape`` (θ of the theta-logistic, b of the Gompertz map, A/K of the Allee curve).
+    holds the curve's own ``shape`` (θ of the theta-logistic, b of the Gompertz map, A/K of the Allee
+    curve, adult survival of Ricker and Beverton–Holt).
     """
 
     name: str

@@ -149,8 +149,9 @@ class Field:
 
     @property
     def is_proportion(self) -> bool:
-        """Whether the value lies strictly between 0 and 1 (a "90% between" is then logit-normal)."""
-        return self.within == INSIDE_0_1
+        """Whether the value lies between 0 and 1, and below 1 (a "90% between" is then logit-normal)."""
+        within = self.within
+        return within is not None and within.low == 0 and within.high == 1 and within.high_open
 
     @property
     def is_positive(self) -> bool:

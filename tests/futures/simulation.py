@@ -43,6 +43,8 @@ def growth(name: np.ndarray, n: np.ndarray, r: np.ndarray, k: np.ndarray, s: np.
             "fox": lambda x=x, a=a, c=c, p=positive: a * x * np.log(c / p),
             "gompertz": lambda x=x, c=c, d=d: x ** (1 - d) * c**d - x,
             "allee": lambda x=x, a=a, c=c, d=d: a * x * (1 - x / c) * (x / c - d),
+            "ricker": lambda x=x, a=a, c=c, d=d: x * ((a + 1 - d) * (1 + a / (1 - d)) ** (-x / c) - (1 - d)),
+            "beverton-holt": lambda x=x, a=a, c=c, d=d: x * ((a + 1 - d) / (1 + a / (1 - d) * x / c) - (1 - d)),
         }[one]()
     return g
 

@@ -19,7 +19,15 @@ from .simulation import Plan, simulate
 DRAWS = 20_000
 STRICT = 4.5
 #: One shape for each curve of the mixture.
-SHAPES = {"logistic": np.nan, "theta-logistic": 2.4, "fox": np.nan, "gompertz": 0.25, "allee": 0.15}
+SHAPES = {
+    "logistic": np.nan,
+    "theta-logistic": 2.4,
+    "fox": np.nan,
+    "gompertz": 0.25,
+    "allee": 0.15,
+    "ricker": 0.8,
+    "beverton-holt": 0.0,
+}
 
 
 @dataclass

@@ -48,7 +48,8 @@ rules = st.one_of(
 )
 def test_nothing_is_taken_that_is_not_there(curve, place, rule, r, sigma, demo, start, losses, cv, seed):
     season, when, lag = place
-    n, shape = 40, {"theta-logistic": 2.0, "gompertz": 0.3, "allee": 0.2}.get(curve, np.nan)
+    shapes = {"theta-logistic": 2.0, "gompertz": 0.3, "allee": 0.2, "ricker": 0.7, "beverton-holt": 0.0}
+    n, shape = 40, shapes.get(curve, np.nan)
     wounding, unreported, other = losses
     rates = make_rates(
         curve,
@@ -96,9 +97,9 @@ def busy():
     rng = np.random.default_rng(2)
     n = 21_000
     rates = make_rates(
-        np.repeat(CURVES, [5000, 4000, 4000, 4000, 4000]).tolist(),
+        np.repeat(CURVES, 3000).tolist(),
         r=rng.uniform(0.1, 0.9, n),
-        shape=np.repeat([np.nan, 2.0, np.nan, 0.3, 0.1], [5000, 4000, 4000, 4000, 4000]),
+        shape=np.repeat([np.nan, 2.0, np.nan, 0.3, 0.1, 0.7, 0.0], 3000),
         K=rng.uniform(500, 1500, n),
         sigma=0.3,
         sigma_demo=1.0,

@@ -25,6 +25,10 @@ def growth(curve: int, n: float, r: float, k: float, s: float) -> float:
         return n ** (1 - s) * k**s - n
     if curve == 4:
         return r * n * (1 - n / k) * (n / k - s)
+    if curve == 5:
+        return n * (1 - s) * math.expm1(math.log1p(r / (1 - s)) * (1 - n / k))
+    if curve == 6:
+        return r * n * (k - n) / (k + n * r / (1 - s))
     raise ValueError(f"no growth curve {curve} here: add it")
 
 

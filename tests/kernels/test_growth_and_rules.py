@@ -22,9 +22,14 @@ def lanes(curve: int, n: int = 500):
     x = k * np.exp(rng.uniform(-25, 2, n))
     x[:5] = [0.0, k[1], k[2] * 0.5, k[3] * 3, k[4] * 1e-12]
     r = rng.uniform(0.01, 3, n)
-    s = {1: rng.uniform(0.05, 8, n), 3: rng.uniform(0.02, 0.98, n), 4: rng.uniform(0.01, 0.6, n)}.get(
-        curve, np.zeros(n)
-    )
+    survival = np.where(np.arange(n) % 7 == 0, 0.0, rng.uniform(0, 0.99, n))  # every seventh dies after breeding
+    s = {
+        1: rng.uniform(0.05, 8, n),
+        3: rng.uniform(0.02, 0.98, n),
+        4: rng.uniform(0.01, 0.6, n),
+        5: survival,
+        6: survival,
+    }.get(curve, np.zeros(n))
     return x, r, k, s
 
 

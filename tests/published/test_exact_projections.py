@@ -88,6 +88,8 @@ def test_without_noise_the_projection_is_the_recursion(curve, season, when, lag,
         "theta-logistic": rng.uniform(0.4, 3, n),
         "gompertz": rng.uniform(0.1, 0.6, n),
         "allee": rng.uniform(0.05, 0.3, n),
+        "ricker": rng.uniform(0, 0.95, n),
+        "beverton-holt": rng.uniform(0, 0.95, n),
     }
     columns = {
         "r": rng.uniform(0.05, 1.2, n),

@@ -113,7 +113,7 @@ def test_nine_tenths_between_is_normal_otherwise_and_truncated_like_one():
 def test_which_meaning_each_rate_has():
     """Proportions are logit-normal, rates and ratios that only need to be positive lognormal."""
     proportions = {name for name, domain in DOMAINS.items() if domain == PROPORTION}
-    assert proportions == {"gompertz shape", "allee shape"}
+    assert proportions == {"gompertz shape", "allee shape", "ricker shape", "beverton-holt shape"}
     assert {name for name, domain in DOMAINS.items() if domain == CORRELATION} == {"autocorrelation"}
     assert DOMAINS["bias"] == DOMAINS["growth_rate"] == DOMAINS["carrying_capacity"] == POSITIVE
 

@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 from scipy import stats
 
 from harvest.errors import RatesError, SettingsError
+from harvest.population import BY_NAME
 from harvest.rates import COLUMNS, draw_rates
 from harvest.rates.draw import curve_counts
 from harvest.rates.spread import Spread
@@ -147,7 +148,14 @@ def test_max_growth_is_growth_at_the_stated_low_abundance_for_unbounded_curves()
     growth = spread("90% between", low=0.1, high=0.3)
     curves = tuple(
         CurveChoice(name, 1.0, shape)
-        for name, shape in (("logistic", ()), ("fox", ()), ("gompertz", ()), ("allee", (("shape", fixed(0.2)),)))
+        for name, shape in (
+            ("logistic", ()),
+            ("fox", ()),
+            ("gompertz", ()),
+            ("allee", (("shape", fixed(0.2)),)),
+            ("ricker", (("shape", fixed(0.7)),)),
+            ("beverton-holt", (("shape", fixed(0.0)),)),
+        )
     )
     record = replace(
         make_record(),
@@ -155,16 +163,35 @@ def test_max_growth_is_growth_at_the_stated_low_abundance_for_unbounded_curves()
         low_abundance=0.1,
         rates=(("max_growth", growth), ("carrying_capacity", fixed(1000.0))),
     )
-    t = draw_rates(record, draws=4000).table
+    t = draw_rates(record, draws=1000 * len(curves)).table
     p = {
         "logistic": t["r"],
         "fox": t["r"] * np.log(10),
         "gompertz": 10 ** t["shape"] - 1,
         "allee": t["r"] * 0.8**2 / 4,
+        "ricker": t["r"],
+        "beverton-holt": t["r"],
     }
     for name, values in p.items():
         mine = values[t["curve"] == name]
         assert mine.quantile([0.05, 0.5, 0.95]).tolist() == pytest.approx([0.1, np.sqrt(0.03), 0.3], rel=0.06), name
+
+
+def test_all_curves_mix_in_one_table_and_adult_survival_follows_its_range():
+    """A 90% range of survival is logit-normal, its two ends its quantiles; a fixed 0, all dying, stays 0."""
+    survival = spread("90% between", low=0.6, high=0.9)
+    shapes = {"theta-logistic": fixed(2.0), "gompertz": fixed(0.3), "allee": fixed(0.2)}
+    shapes |= {"ricker": survival, "beverton-holt": fixed(0.0)}
+    curves = tuple(CurveChoice(n, 1.0, (("shape", shapes[n]),) if n in shapes else ()) for n in BY_NAME)
+    rates = draw_rates(replace(full_record(), curves=curves), draws=7 * 3000)
+    assert rates.table["curve"].value_counts().to_dict() == dict.fromkeys(BY_NAME, 3000)
+    drawn = rates.table[rates.table["curve"] == "ricker"]["shape"]
+    low, high = np.log(0.6 / 0.4), np.log(0.9 / 0.1)
+    exact = stats.norm((low + high) / 2, (high - low) / 2 / stats.norm.ppf(0.95))
+    assert stats.kstest(np.log(drawn / (1 - drawn)), exact.cdf).pvalue > 1e-3
+    assert (rates.table[rates.table["curve"] == "beverton-holt"]["shape"] == 0.0).all()
+    assert np.isfinite(rates.closed_form("msy")).all()
+    assert (rates.closed_form("msy") > 0).all()
 
 
 def test_refusals_say_what_to_do():

@@ -126,7 +126,7 @@ def curve_sets(draw: st.DrawFn) -> tuple[tuple[CurveChoice, ...], tuple[tuple[st
     curves = []
     for name in chosen:
         own = draw(st.booleans())
-        keys = ["shape"] if name in ("theta-logistic", "allee") else []
+        keys = ["shape"] if name in ("theta-logistic", "allee", "ricker", "beverton-holt") else []
         if name == "gompertz":
             keys.append("shape" if growth != "max_growth" or own else "max_growth")
         elif growth == "own" or own:

@@ -11,6 +11,8 @@ from .edits import CSV, TOML, edited, problems_of, told
 GROWTH = 'max_growth = { distribution = "uniform", low = 0.2, high = 0.4 }'
 CAPACITY = 'carrying_capacity = { distribution = "90% between", low = 800, high = 1500 }'
 LOGISTIC = '[[curve]]\nname = "logistic"\n'
+SURVIVAL = '[life]\nadult_survival = 0.85\n[[curve]]\nname = "ricker"\n'
+TO_ONE = '[[curve]]\nname = "ricker"\nshape = { distribution = "90% between", low = 0.8, high = 1.0 }\n'
 
 
 def test_the_text_to_edit_is_sound() -> None:
@@ -85,6 +87,14 @@ def test_the_text_to_edit_is_sound() -> None:
         (LOGISTIC, '[[curve]]\nname = "gompertz"\nshape = 1.5\n', ["curve 1, shape: found 1.5"]),
         (LOGISTIC, '[[curve]]\nname = "gompertz"\nshape = 0.5\nmax_growth = 0.2\n', ["both shape and max_growth"]),
         (LOGISTIC, '[[curve]]\nname = "gompertz"\ngrowth_rate = 0.2\n', ["no growth_rate"]),
+        (LOGISTIC, '[[curve]]\nname = "ricker"\n', ["curve 1, shape", "survival of adults", "at least 0 and below 1"]),
+        (LOGISTIC, '[[curve]]\nname = "beverton-holt"\n', ["curve 1, shape", "survival of adults", "is needed"]),
+        (LOGISTIC, SURVIVAL, ["curve 1, shape: found nothing", "shape = 0.85", "[life]"]),
+        (LOGISTIC, edited(SURVIVAL, "0.85", "1"), ["curve 1, shape: found nothing", "at least 0 and below 1"]),
+        (LOGISTIC, '[[curve]]\nname = "ricker"\nshape = 1\n', ["curve 1, shape: found 1", "below 1"]),
+        (LOGISTIC, '[[curve]]\nname = "beverton-holt"\nshape = -0.1\n', ["curve 1, shape: found -0.1", "at least 0"]),
+        (LOGISTIC, TO_ONE, ["curve 1, shape", "inside 0 and 1"]),
+        (LOGISTIC, '[[curve]]\nname = "riker"\nshape = 0.5\n', ["curve 1, name", 'Was "ricker" meant?']),
         (LOGISTIC, '[[curve]]\nname = "logistik"\n', ["curve 1, name", 'Was "logistic" meant?']),
         (LOGISTIC, LOGISTIC + "growth_rate = 0.1\nmax_growth = 0.1\n", ["curve 1", "both growth_rate and max"]),
         (GROWTH, GROWTH + "\ngrowth_rate = 0.3", ["rates:", "both growth_rate and max_growth"]),
@@ -243,6 +253,9 @@ def test_a_warning_is_given(old: str, new: str, words: list[str]) -> None:
         (LOGISTIC, LOGISTIC + "growth_rate = 0.3\n"),  # a curve's own growth stands for the shared one
         (LOGISTIC, '[[curve]]\nname = "gompertz"\n'),
         (LOGISTIC, '[[curve]]\nname = "gompertz"\nshape = 0.5\n'),
+        (LOGISTIC, '[[curve]]\nname = "ricker"\nshape = 0\n'),
+        (LOGISTIC, TO_ONE.replace("1.0", "0.95")),
+        (LOGISTIC, '[[curve]]\nname = "beverton-holt"\nshape = { distribution = "uniform", low = 0, high = 1 }\n'),
         (GROWTH, "growth_rate = 0.3"),
         ("process_noise = 0.1", "process_noise = 0"),
         ("cv = 0.3", 'cv = 0.3\nwhen = "after"'),

@@ -68,8 +68,8 @@ def test_the_fold_tips_the_population_both_ways():
     """A step of the model from just above the lower equilibrium climbs, from just below it falls to nothing."""
     rates = make_rates(
         list(BY_NAME),
-        r=[0.4, 0.4, 0.4, np.nan, 1.0],
-        shape=[np.nan, 2, np.nan, 0.3, 0.1],
+        r=[0.4, 0.4, 0.4, np.nan, 1.0, 0.4, 0.4],
+        shape=[np.nan, 2, np.nan, 0.3, 0.1, 0.7, 0.0],
     )
     for season, when in (("short", "before"), ("all year", "start")):
         record = make_record(season, when)
