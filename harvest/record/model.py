@@ -9,6 +9,7 @@ from __future__ import annotations
 import hashlib
 import json
 from dataclasses import asdict, dataclass, field
+from typing import Any
 
 FORMAT = 1
 UNITS = ("animals", "tonnes")
@@ -254,5 +255,14 @@ class Record:
 
     def digest(self) -> str:
         """SHA-256 of the record's content (not of the files' bytes): hexadecimal, 64 digits."""
-        text = json.dumps(asdict(self), sort_keys=True, ensure_ascii=False, separators=(",", ":"))
+        text = json.dumps(_same_zeros(asdict(self)), sort_keys=True, ensure_ascii=False, separators=(",", ":"))
         return hashlib.sha256(text.encode()).hexdigest()
+
+
+def _same_zeros(value: Any) -> Any:
+    """The same values with every negative zero made zero: equal records then have one digest."""
+    if isinstance(value, dict):
+        return {key: _same_zeros(inner) for key, inner in value.items()}
+    if isinstance(value, list | tuple):
+        return [_same_zeros(inner) for inner in value]
+    return value + 0.0 if isinstance(value, float) else value

@@ -29,6 +29,14 @@ def test_any_record_survives_its_files(record: Record) -> None:
     assert {p.severity for p in problems} <= {"warning"}
 
 
+def test_equal_records_have_one_digest() -> None:
+    """Zero and negative zero are equal, so they must not tell two records apart."""
+    record = read_record(demo_folder("deer"))
+    zero, negative = (replace(record, correlations=(Correlation("a", "b", value),)) for value in (0.0, -0.0))
+    assert zero == negative
+    assert zero.digest() == negative.digest()
+
+
 @given(records())
 @settings(max_examples=30, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 def test_writing_again_gives_the_same_bytes(record: Record) -> None:
