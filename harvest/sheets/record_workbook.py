@@ -73,30 +73,6 @@ def is_record_workbook(data: bytes) -> bool:
         return False
 
 
-def read_record_workbook(name: str, data: bytes) -> tuple[str, str]:
-    """The text of the ``record.toml`` and of the history that a workbook stands for; nothing is checked.
-
-    Parameters
-    ----------
-    name : str
-        The workbook's file name, for messages.
-    data : bytes
-        Its content.
-
-    Raises
-    ------
-    SheetError
-        When it cannot be opened, or is not the workbook of a record.
-    """
-    checked = check_record_workbook(name, data)
-    return checked.record_text, checked.history_text
-
-
-def workbook_problems(name: str, data: bytes) -> tuple[Problem, ...]:
-    """Every problem of a record's workbook, in one pass; see :func:`check_record_workbook`."""
-    return check_record_workbook(name, data).problems
-
-
 def check_record_workbook(name: str, data: bytes) -> CheckedWorkbook:
     """Read a record's workbook and find every problem in it.
 

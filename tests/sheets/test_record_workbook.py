@@ -28,9 +28,7 @@ from harvest.sheets.record_workbook import (
     blank_record_workbook,
     check_record_workbook,
     is_record_workbook,
-    read_record_workbook,
     record_workbook,
-    workbook_problems,
 )
 from harvest.sheets.record_workbook_values import from_cells, quote, to_cells, unquote
 from harvest.sheets.record_workbook_words import about_field, without_toml
@@ -86,13 +84,14 @@ def with_stored_value(data: bytes, formula: str, value: str) -> bytes:
 
 
 def told(data: bytes) -> list[str]:
-    return [str(problem) for problem in workbook_problems("herd.xlsx", data)]
+    return [str(problem) for problem in check_record_workbook("herd.xlsx", data).problems]
 
 
 @given(records())
 @settings(max_examples=25, suppress_health_check=[HealthCheck.too_slow])
 def test_any_record_survives_its_workbook(record: Record) -> None:
-    found, _ = check_texts(*read_record_workbook("any.xlsx", record_workbook(record)))
+    checked = check_record_workbook("any.xlsx", record_workbook(record))
+    found, _ = check_texts(checked.record_text, checked.history_text)
     assert found == in_order(record)
 
 
@@ -220,7 +219,7 @@ def test_what_is_a_record_workbook() -> None:
     assert not is_record_workbook(b"year,removals\n2020,3\n")
     assert not is_record_workbook(b"")
     with pytest.raises(SheetError, match=r'^"plain.xlsx" is not the workbook of a record: .* harvest new NAME\.xlsx$'):
-        workbook_problems("plain.xlsx", stream.getvalue())
+        check_record_workbook("plain.xlsx", stream.getvalue())
 
 
 def test_a_newer_format_is_told() -> None:
@@ -320,7 +319,7 @@ def test_cells_without_a_use_are_told(item: str, column: str, value: object, wor
 def test_a_range_without_its_kind_is_told_and_kept() -> None:
     data, where = with_cell("Growth", "Rates of all curves", "Greatest growth per head (max growth)", "B", None)
     assert any(f"{where} (rates.max_growth.distribution): found nothing" in line for line in told(data))
-    assert "max_growth = { low = 0.28, high = 0.44 }" in read_record_workbook("herd.xlsx", data)[0]
+    assert "max_growth = { low = 0.28, high = 0.44 }" in check_record_workbook("herd.xlsx", data).record_text
 
 
 def test_one_number_without_a_kind_is_exact() -> None:
@@ -343,13 +342,13 @@ def test_a_row_that_nobody_knows_is_carried() -> None:
         '"Counts as collapsed below", "Horizon", "Risk tolerance", "Recovery: back above the limit", '
         '"Reduction: down below the ceiling", "Years in the quota table", "Recovery factor".'
     ]
-    assert "antler_points = 2200" in read_record_workbook("herd.xlsx", data)[0]
+    assert "antler_points = 2200" in check_record_workbook("herd.xlsx", data).record_text
 
 
 def test_a_block_that_nobody_knows_is_carried() -> None:
     data, where = with_cell("Objectives", "Losses", "", "A", "▸ Gains")
     assert told(data)[0].startswith(f'error: herd.xlsx, {where} ("gains"): found a table; this key is unknown here.')
-    assert "[gains]" in read_record_workbook("herd.xlsx", data)[0]
+    assert "[gains]" in check_record_workbook("herd.xlsx", data).record_text
 
 
 def test_a_second_row_of_the_same_item_is_told() -> None:
